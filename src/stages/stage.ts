@@ -3,6 +3,7 @@
  * any data), and its kernel at work on the data. Everything else of the house treats all stages alike.
  */
 import type { z } from "zod";
+import type { WindowKind } from "../signal/windows.ts";
 import type { Grid } from "../signal/grid.ts";
 import type { GridBlock, Kernel } from "../signal/grid-block.ts";
 
@@ -19,6 +20,8 @@ export interface Signal {
   readonly channels: readonly { readonly name: string; readonly unit: string }[];
   /** Per channel (same order): the filters that it has passed since the grid began. */
   readonly filters: readonly (readonly FilterTaps[])[];
+  /** Interval of the chain's first grid, seconds; null before it. */
+  readonly finest_s: number | null;
 }
 
 /** A mistake seen by a stage's design, with the setting it concerns (empty path: the stage itself). */
@@ -36,6 +39,8 @@ export interface Problem {
 export interface Delay {
   /** Delay of the stage's filter run over past samples only. */
   readonly samples: number;
+  /** Samples by which the window reaches past its output's index: taken back on the index. */
+  readonly indexSamples: number;
   /** Seconds that time stamps are moved or windows centred to take the delay back. */
   readonly compensated_s: number;
 }
@@ -71,7 +76,7 @@ export interface StageDesign {
   /** Facts for people and for the account that only this stage has. */
   readonly notes: Record<string, unknown>;
   /** Present where the stage needs a pass over the record first (a trend). */
-  readonly learn?: (channel: number) => Learner;
+  readonly learn?: (extent: { readonly first: number; readonly last: number }) => Learner;
   /**
    * The kernel for one channel. With fullRate, a stage that drops samples computes its filter at every
    * input sample (the engine drops them afterwards), so that what it removes can be measured.
@@ -95,11 +100,21 @@ export interface RowKernel extends Omit<Kernel, "push"> {
   effect(): Record<string, unknown>;
 }
 
+/** The design of a report stage. */
+export interface ReportDesign extends StageDesign {
+  readonly report: ReportSettings;
+}
+
 /** The design of the one stage that leads from rows to a grid. */
 export interface GridDesign extends StageDesign {
   readonly rowKernel: () => RowKernel;
   /** Problems that only the log's own interval shows. */
   readonly checkInterval: (nominal_s: number) => Problem[];
+  /** The effect of interpolation on the spectrum: mean |H|^2 at f, from what `effect` counted. */
+  readonly interpolation: {
+    readonly between: string;
+    readonly meanPowerGain: ((blend: number, f_Hz: number, rowInterval_s: number) => number) | null;
+  };
 }
 
 export interface DesignOutcome<D extends StageDesign = StageDesign> {
@@ -124,7 +139,7 @@ export interface Stage<S extends z.ZodType = z.ZodType> {
 /** Settings that the report stage hands to the account. */
 export interface ReportSettings {
   readonly resolution_Hz: number | null;
-  readonly window: string;
+  readonly window: WindowKind;
   readonly bands: readonly { readonly name: string; readonly from_Hz: number; readonly to_Hz: number }[];
   readonly tones: number;
 }

@@ -1,0 +1,47 @@
+import type { GridBlock } from "../signal/grid-block.ts";
+import { SampleBuffer } from "../signal/sample-buffer.ts";
+import type { IndexRange } from "./index-range.ts";
+import { Extremes, PairSums } from "./sums.ts";
+
+/**
+ * Compares one channel before and after a stage, sample by sample on the stage's input grid: output sample
+ * k stands for input sample k - delay. Handed on to `removed`, where given: index of the input, x and x - y.
+ */
+export class Comparison {
+  readonly sums = new PairSums();
+  readonly before = new Extremes();
+  readonly after = new Extremes();
+  private readonly delay: number | null;
+  private readonly range: IndexRange;
+  private readonly waiting = new SampleBuffer();
+
+  /** @param delay  whole samples; null when the delay is not whole, then only extremes are taken */
+  constructor(delay: number | null, range: IndexRange) {
+    this.delay = delay;
+    this.range = range;
+  }
+
+  pushBefore(block: GridBlock): void {
+    if (this.delay !== null) this.waiting.append(block);
+    const { from, until } = this.range;
+    for (let i = 0, k = block.first; i < block.values.length; i++, k++) {
+      const v = block.values[i]!;
+      if (k >= from && k < until && !Number.isNaN(v)) this.before.add(k, v);
+    }
+  }
+
+  pushAfter(block: GridBlock): void {
+    const { from, until } = this.range;
+    const { waiting, delay } = this;
+    for (let i = 0, k = block.first; i < block.values.length; i++, k++) {
+      const y = block.values[i]!;
+      if (Number.isNaN(y) || k < from || k >= until) continue;
+      this.after.add(k, y);
+      if (delay === null) continue;
+      const at = k - delay - waiting.base;
+      const x = at >= 0 && at < waiting.length ? waiting.values[at]! : Number.NaN;
+      if (!Number.isNaN(x)) this.sums.add(k, x, y);
+    }
+    if (delay !== null) waiting.dropBefore(block.first + block.values.length - delay);
+  }
+}
