@@ -1,6 +1,7 @@
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
 import { coarserGrid, type Grid } from "../signal/grid.ts";
 import { type Emit, type GridBlock, type Kernel, keepEvery, passOn } from "../signal/grid-block.ts";
+import { SUSPECT } from "../signal/marks.ts";
 import { AliasSpectrum } from "./alias-spectrum.ts";
 import { Comparison } from "./comparison.ts";
 import { StateCounts } from "./counts.ts";
@@ -33,6 +34,8 @@ export interface ChainOptions {
   readonly depth?: number;
   /** Left out on a first pass: nothing is measured. */
   readonly spectra?: SpectrumPlans;
+  /** Places in plan.stages whose alias limit is broken on the data: their output is marked suspect. */
+  readonly suspect?: ReadonlySet<number>;
   readonly onGrid?: Emit;
   readonly sink: Emit;
   /** Full-rate output of the last stage before samples are first dropped, for the removed series. */
@@ -56,7 +59,7 @@ export class ChannelChain {
     const tapAt = firstDrop >= 0 ? firstDrop : stages.length - 1;
 
     // Nodes are made from the front (they share transforms), sinks are joined from the back.
-    const links: { kernel: Kernel; before: Emit[]; after: Emit[]; drop: Kernel; counts: StateCounts }[] = [];
+    const links: { kernel: Kernel; before: Emit[]; after: Emit[]; drop: Kernel; counts: StateCounts; suspect: boolean }[] = [];
     let node = new Node(grid, 0, options);
     for (const [i, planned] of stages.entries()) {
       const active = planned.selected.includes(channel);
@@ -70,13 +73,14 @@ export class ChannelChain {
         after: [] as Emit[],
         drop: dropping && fullRate ? keepEvery(design.keepEvery) : passOn(),
         counts: new StateCounts(indexRange(design.grid, scope)),
+        suspect: active && options.suspect?.has(i) === true,
       };
       const range = indexRange(node.grid, scope);
       let comparison: Comparison | null = null;
       let cross: CrossSpectra | null = null;
       let spectra: NodeSpectra | null = null;
       // What the output lags behind its input, in input samples, after moved stamps are counted.
-      const lag = active ? residualSamples(planned) : 0;
+      const lag = active ? lagSamples(planned) : 0;
       const whole = Math.floor(lag + 1e-9);
       const fraction = Math.abs(lag - whole) < 1e-9 ? 0 : lag - whole;
       const full = new Node(dropping ? node.grid : design.grid, node.shift + whole, options);
@@ -118,6 +122,7 @@ export class ChannelChain {
       const next = push;
       const nextFlush = flush;
       const out: Emit = (block) => {
+        if (link.suspect) markSuspect(block);
         link.counts.push(block);
         next(block);
       };
@@ -160,9 +165,13 @@ export class ChannelChain {
 }
 
 /** How far the output's index lags behind the input's, in input samples (not whole for even lengths). */
-export function residualSamples(planned: PlannedStage): number {
+export function lagSamples(planned: PlannedStage): number {
   const { design } = planned;
   return design.delay.samples - design.delay.indexSamples;
+}
+
+function markSuspect(block: GridBlock): void {
+  for (let i = 0; i < block.marks.length; i++) if (!Number.isNaN(block.values[i]!)) block.marks[i]! |= SUSPECT;
 }
 
 /** A place between two stages: makes its transforms once, however many listen. */

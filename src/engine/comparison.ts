@@ -23,11 +23,7 @@ export class Comparison {
 
   pushBefore(block: GridBlock): void {
     if (this.delay !== null) this.waiting.append(block);
-    const { from, until } = this.range;
-    for (let i = 0, k = block.first; i < block.values.length; i++, k++) {
-      const v = block.values[i]!;
-      if (k >= from && k < until && !Number.isNaN(v)) this.before.add(k, v);
-    }
+    this.before.addBlock(block, this.range);
   }
 
   pushAfter(block: GridBlock): void {

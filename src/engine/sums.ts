@@ -3,6 +3,8 @@
  * 256 samples anchored to the absolute index, compensated (Neumaier 1974) from cell to cell.
  */
 import { CompensatedSum } from "../signal/compensated-sum.ts";
+import type { GridBlock } from "../signal/grid-block.ts";
+import type { IndexRange } from "./index-range.ts";
 
 const CELL_BITS = 8;
 
@@ -106,6 +108,16 @@ export class Extremes {
     if (value < this.low) {
       this.low = value;
       this.lowAt = index;
+    }
+  }
+
+  /** The present samples of a block inside a range. */
+  addBlock(block: GridBlock, range: IndexRange): void {
+    const start = Math.max(0, range.from - block.first);
+    const end = Math.min(block.values.length, range.until - block.first);
+    for (let i = start; i < end; i++) {
+      const v = block.values[i]!;
+      if (!Number.isNaN(v)) this.add(block.first + i, v);
     }
   }
 }

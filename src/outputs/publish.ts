@@ -83,6 +83,7 @@ export class PublishSet {
       file.close();
       rmSync(file.partPath, { force: true });
     }
+    this.pending.length = 0;
   }
 }
 

@@ -1,0 +1,297 @@
+/** What the account says of one stage: its design's figures, and what was measured on each channel. */
+import { lagSamples, type StageMeasure } from "../engine/channel-chain.ts";
+import type { StateCounts } from "../engine/counts.ts";
+import type { ChannelResult } from "../engine/run-chain.ts";
+import type { AliasMeasure } from "../engine/alias-spectrum.ts";
+import { isoTime } from "../outputs/cell-text.ts";
+import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
+import { filterFigures } from "../signal/filter-figures.ts";
+import { foldedFrequency } from "../signal/fold.ts";
+import { type Grid, intervalSeconds, timeOf } from "../signal/grid.ts";
+import type { Extremes } from "../engine/sums.ts";
+import { bandPower } from "../signal/welch.ts";
+import type { AliasAccount, ChannelAccount, Extreme, StageAccount } from "./account-format.ts";
+import { stageGain } from "./requirements.ts";
+import { bandAccounts, decibels, densities, spectrumAccount, toneAccounts } from "./spectrum-account.ts";
+
+const RESPONSE_POINTS = 400;
+const MAINS_Hz = [50, 60];
+const HARMONICS = 5;
+
+/** One-decimal-free number or list, as the design's keys want it: number for one edge, list for two. */
+function edge(list: readonly number[], interval_s: number): number | number[] | null {
+  const hz = list.map((f) => f / interval_s);
+  return hz.length === 0 ? null : hz.length === 1 ? hz[0]! : hz;
+}
+
+/** The part that is known before any data. */
+export function stageDesignAccount(plan: Plan, planned: PlannedStage): StageAccount {
+  const { design, signalIn } = planned;
+  const interval = signalIn.grid === null ? null : intervalSeconds(signalIn.grid);
+  const out = intervalSeconds(design.grid);
+  const step = interval ?? out;
+  const figures = design.taps === null || design.taps.length < 2 ? null : filterFigures(design.taps);
+  const introduced = design.delay.samples * step;
+  return {
+    place: planned.place,
+    stage: planned.stage,
+    says: design.says,
+    settings: design.settings,
+    in: { interval_s: interval, samples: 0 },
+    out: { interval_s: out, samples: 0 },
+    taps: design.taps?.length ?? null,
+    coefficients: design.taps === null ? null : Array.from(design.taps),
+    delay: {
+      samples: design.delay.samples,
+      introduced_s: introduced,
+      compensated_s: design.delay.compensated_s,
+      residual_s: introduced - design.delay.compensated_s,
+    },
+    look_ahead_s: design.reach === null ? null : lookAhead(planned, step),
+    end_s: design.end_s,
+    rise_s: figures?.rise == null ? null : figures.rise * step,
+    overshoot_pct: figures?.overshoot == null ? null : figures.overshoot * 100,
+    gain:
+      figures === null
+        ? null
+        : {
+            dc: figures.dc,
+            f_1dB_Hz: edge(figures.f1, step),
+            f_3dB_Hz: edge(figures.f3, step),
+            f_6dB_Hz: edge(figures.f6, step),
+          },
+    enbw_Hz: figures === null ? null : figures.noiseBandwidth / step,
+    response: figures === null || interval === null ? null : response(planned, interval),
+    folds: design.keepEvery > 1 && interval !== null ? mainsFolds(plan, planned, interval) : [],
+    channels: {},
+    alias: design.alias === null ? null : aliasAccount(planned, []),
+    notes: { ...design.notes },
+  };
+}
+
+/** The value at t uses data up to t + this: an even centred window reaches half a sample less than its index. */
+export function lookAhead(planned: PlannedStage, interval_s: number): number {
+  const { design } = planned;
+  const shift = design.grid !== planned.signalIn.grid && design.keepEvery === 1 && planned.signalIn.grid !== null;
+  const half = shift && design.grid.offset !== planned.signalIn.grid!.offset ? 0.5 : 0;
+  return ((design.reach?.after ?? 0) - half) * interval_s;
+}
+
+/** The same with what was measured. */
+export function stageAccount(
+  plan: Plan,
+  planned: PlannedStage,
+  index: number,
+  results: readonly ChannelResult[],
+): StageAccount {
+  const account = stageDesignAccount(plan, planned);
+  const channels: Record<string, ChannelAccount> = {};
+  const notes: Record<string, unknown> = { ...account.notes };
+  const trends: Record<string, unknown> = {};
+  for (const [c, channel] of plan.channels.entries()) {
+    const measure = results[c]!.measures[index]!;
+    channels[channel.name] = channelAccount(plan, planned, measure, channel.unit);
+    const learned = results[c]!.learned.get(index);
+    if (learned !== undefined) trends[channel.name] = planned.design.learnedNotes?.(learned, channel.unit);
+  }
+  if (Object.keys(trends).length > 0) notes["trend"] = trends;
+  const first = results[0]!;
+  const before = index === 0 ? first.gridCounts.samples : first.measures[index - 1]!.counts.samples;
+  return {
+    ...account,
+    in: { ...account.in, samples: before },
+    out: { ...account.out, samples: first.measures[index]!.counts.samples },
+    channels,
+    alias:
+      planned.design.alias === null
+        ? null
+        : aliasAccount(
+            planned,
+            plan.channels.map((channel, c) => ({
+              channel: channel.name,
+              measure: results[c]!.measures[index]!.alias?.measure() ?? null,
+            })),
+          ),
+    notes,
+  };
+}
+
+/** The stage that puts rows onto the grid: no input on the same grid, so nothing is said to be removed. */
+export function gridStageAccount(plan: Plan, results: readonly ChannelResult[], rows: number, nominal_s: number): StageAccount {
+  const { gridStage } = plan;
+  const account = stageDesignAccount(plan, gridStage);
+  const channels: Record<string, ChannelAccount> = {};
+  const effect: Record<string, unknown> = {};
+  const { interpolation } = gridStage.design;
+  for (const [c, channel] of plan.channels.entries()) {
+    const result = results[c]!;
+    channels[channel.name] = { ...unmeasured(channel.unit), ...counted(result.gridCounts) };
+    const counts = result.interpolation as { blend: number };
+    const gain = interpolation.meanPowerGain;
+    effect[channel.name] = {
+      ...result.interpolation,
+      ...(gain === null
+        ? {}
+        : {
+            row_interval_s: nominal_s,
+            mean_gain: meanGains(nominal_s).map(({ share, f_Hz }) => ({
+              frequency_Hz: f_Hz,
+              share_of_rate: share,
+              gain_dB: 10 * Math.log10(Math.max(1e-40, gain(counts.blend, f_Hz, nominal_s))),
+            })),
+            noise_variance_kept_pct: 100 * (1 - counts.blend),
+          }),
+    };
+  }
+  return {
+    ...account,
+    in: { interval_s: null, samples: rows },
+    out: { ...account.out, samples: results[0]!.gridCounts.samples },
+    channels,
+    notes: { ...account.notes, interpolation: effect },
+  };
+}
+
+const meanGains = (interval_s: number) =>
+  [0.05, 0.1, 0.2, 0.3, 0.4, 0.5].map((share) => ({ share, f_Hz: share / interval_s }));
+
+function channelAccount(plan: Plan, planned: PlannedStage, measure: StageMeasure, unit: string): ChannelAccount {
+  const base = { ...unmeasured(unit), ...counted(measure.counts) };
+  const { comparison } = measure;
+  if (comparison === null || plan.report === null) return base;
+  const grid = planned.signalIn.grid!;
+  const outGrid: Grid = planned.design.keepEvery > 1 ? grid : planned.design.grid;
+  const sums = comparison.sums.figures();
+  const d =
+    measure.cross === null || measure.spectra === null ? null : densities(measure.spectra.plan, measure.cross);
+  const { taps } = planned.design;
+  const whole = Math.abs(lagSamples(planned) - Math.round(lagSamples(planned))) < 1e-9;
+  return {
+    ...base,
+    accounted: true,
+    samples: sums?.count ?? 0,
+    mean_in: sums?.meanIn ?? null,
+    mean_out: sums?.meanOut ?? null,
+    rms_in: sums === null ? null : Math.sqrt(sums.varianceIn),
+    rms_out: sums === null ? null : Math.sqrt(sums.varianceOut),
+    rms_removed: sums === null ? spectralRms(d) : Math.sqrt(sums.varianceRemoved),
+    variance_removed_pct:
+      sums === null ? spectralShare(d) : sums.varianceIn > 0 ? (100 * sums.varianceRemoved) / sums.varianceIn : 0,
+    basis: sums !== null ? "samples" : d !== null && !whole ? "segment spectra" : null,
+    extremes: {
+      highest_in: extreme(comparison.before, grid, "high"),
+      highest_out: extreme(comparison.after, outGrid, "high"),
+      lowest_in: extreme(comparison.before, grid, "low"),
+      lowest_out: extreme(comparison.after, outGrid, "low"),
+    },
+    bands: d === null ? [] : bandAccounts(d, plan.report.bands, taps),
+    tones: d === null ? [] : toneAccounts(d, taps, planned.design.keepEvery, plan.report.tones),
+    spectrum: d === null ? null : spectrumAccount(d, plan.report.window),
+  };
+}
+
+type Spectral = ReturnType<typeof densities>;
+
+const power = (d: NonNullable<Spectral>, density: Float64Array) =>
+  bandPower(density, d.plan.resolution_Hz, 0, d.plan.frequency(d.plan.bins - 1));
+
+function spectralRms(d: Spectral): number | null {
+  return d === null ? null : Math.sqrt(power(d, d.rr));
+}
+
+function spectralShare(d: Spectral): number | null {
+  if (d === null) return null;
+  const all = power(d, d.xx);
+  return all > 0 ? (100 * power(d, d.rr)) / all : 0;
+}
+
+function unmeasured(unit: string): Omit<ChannelAccount, "counts" | "holds"> {
+  return {
+    unit,
+    accounted: false,
+    samples: 0,
+    mean_in: null,
+    mean_out: null,
+    rms_in: null,
+    rms_out: null,
+    rms_removed: null,
+    variance_removed_pct: null,
+    basis: null,
+    extremes: null,
+    bands: [],
+    tones: [],
+    spectrum: null,
+  };
+}
+
+export function counted(counts: StateCounts): Pick<ChannelAccount, "counts" | "holds"> {
+  return { counts: counts.states(), holds: counts.holds() };
+}
+
+function extreme(found: Extremes, grid: Grid, which: "high" | "low"): Extreme | null {
+  if (!found.any) return null;
+  return which === "high"
+    ? { value: found.high, time: isoTime(timeOf(grid, found.highAt)) }
+    : { value: found.low, time: isoTime(timeOf(grid, found.lowAt)) };
+}
+
+function response(planned: PlannedStage, interval_s: number): StageAccount["response"] {
+  const f = Array.from({ length: RESPONSE_POINTS + 1 }, (_, i) => i / (2 * RESPONSE_POINTS));
+  return {
+    frequency_Hz: f.map((x) => x / interval_s),
+    gain_dB: f.map((x) => Math.max(-400, decibels(stageGain(planned, x)))),
+  };
+}
+
+/** Where mains hum and its harmonics land, as far as the stage's input can hold them. */
+function mainsFolds(plan: Plan, planned: PlannedStage, interval_s: number): StageAccount["folds"] {
+  const rate = 1 / interval_s;
+  const newRate = rate / planned.design.keepEvery;
+  return MAINS_Hz.flatMap((mains) => Array.from({ length: HARMONICS }, (_, h) => mains * (h + 1)))
+    .filter((f) => f > newRate / 2 && f <= rate / 2)
+    .map((f) => {
+      const landed = foldedFrequency(f, newRate);
+      return {
+        frequency_Hz: f,
+        lands_at_Hz: landed.frequency,
+        gain_dB: decibels(upstreamGain(plan, planned, f)),
+        inverted: landed.inverted,
+      };
+    });
+}
+
+/** Gain at f of everything from the grid's start to this stage's own filter, first channel that it works on. */
+function upstreamGain(plan: Plan, planned: PlannedStage, f_Hz: number): number {
+  let gain = 1;
+  for (const stage of plan.stages) {
+    const interval = intervalSeconds(stage.signalIn.grid!);
+    if (stage.selected.includes(planned.selected[0]!) && f_Hz * interval <= 0.5) gain *= stageGain(stage, f_Hz * interval);
+    if (stage === planned) break;
+  }
+  return gain;
+}
+
+function aliasAccount(
+  planned: PlannedStage,
+  measured: readonly { channel: string; measure: AliasMeasure | null }[],
+): AliasAccount {
+  const alias = planned.design.alias!;
+  let worst: { channel: string; measure: AliasMeasure } | null = null;
+  for (const { channel, measure } of measured)
+    if (measure !== null && (worst === null || measure.ratio_dB > worst.measure.ratio_dB)) worst = { channel, measure };
+  return {
+    anti_alias: alias.antiAlias,
+    accepted: alias.accepted,
+    kept_to_Hz: alias.keptTo_Hz,
+    design_worst_gain_dB: alias.worstGain_dB,
+    design_source_Hz: alias.source_Hz,
+    design_met: alias.met,
+    ratio_dB: worst?.measure.ratio_dB ?? null,
+    worst_channel: worst?.channel ?? null,
+    worst_band: worst?.measure.band ?? null,
+    source_Hz: worst?.measure.source_Hz ?? null,
+    lands_at_Hz: worst?.measure.landsAt_Hz ?? null,
+    limit_dB: alias.limit_dB,
+    met: worst === null ? alias.met : worst.measure.ratio_dB <= alias.limit_dB,
+  };
+}
