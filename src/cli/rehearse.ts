@@ -1,0 +1,124 @@
+/** `forebay rehearse`: checks a pipeline and designs every filter, without reading any data. */
+import { type Diagnostic, DiagnosticError, renderDiagnostic } from "../diagnostics.ts";
+import { loadPipeline } from "../pipeline/load.ts";
+import { asDiagnostic, planPipeline } from "../pipeline/plan.ts";
+import { parseDuration } from "../pipeline/quantities.ts";
+import { accountText, designAccount } from "../report/account.ts";
+import type { StageAccount } from "../report/account-format.ts";
+import { STAGES } from "../stages/registry.ts";
+import { checkRemoved, type Streams } from "./clean.ts";
+import { DONE, NOT_MET, WRONG } from "./exit-codes.ts";
+import { shownPath } from "./shown-path.ts";
+import { figure, frequencyText, table, timeText, wrap } from "./text.ts";
+
+export interface RehearseOptions {
+  readonly interval?: string;
+  readonly json?: boolean;
+}
+
+export function rehearse(path: string, options: RehearseOptions, streams: Streams): number {
+  try {
+    const loaded = loadPipeline(path, shownPath(path), STAGES);
+    const { plan, warnings } = planPipeline(loaded, STAGES);
+    checkRemoved(loaded, plan);
+    for (const d of warnings) streams.err(`${renderDiagnostic(d)}\n`);
+    if (options.interval !== undefined) {
+      const problems = plan.gridStage.design.checkInterval(intervalOf(options.interval));
+      if (problems.length > 0)
+        throw new DiagnosticError(problems.map((p) => asDiagnostic(loaded, plan.gridStage.place - 1, p)));
+    }
+    const design = designAccount(plan, loaded.pipeline);
+    streams.out(
+      options.json === true
+        ? accountText(design)
+        : `${designText(loaded.pipeline.name, loaded.pipeline.about, design)}\n`,
+    );
+    return design.requirements.every((r) => r.met) ? DONE : NOT_MET;
+  } catch (error) {
+    if (!(error instanceof DiagnosticError)) throw error;
+    for (const d of error.diagnostics) streams.err(`${renderDiagnostic(d)}\n`);
+    return WRONG;
+  }
+}
+
+function intervalOf(text: string): number {
+  const parsed = parseDuration(text);
+  if (!("error" in parsed)) return parsed.seconds;
+  const d: Diagnostic = { code: "bad-interval", severity: "error", file: "--interval", line: 0, column: 0, problem: "this is not a length of time", ...parsed.error };
+  throw new DiagnosticError([d]);
+}
+
+type Design = ReturnType<typeof designAccount>;
+
+function designText(name: string, about: string | undefined, design: Design): string {
+  const lines = [about === undefined ? name : wrap(`${name}: ${about}`, 80), ""];
+  lines.push(
+    table([
+      ["stage", "in", "out", "taps", "delay", "left", "uses ahead", "ends", "rise"],
+      ...design.stages.map((s) => [
+        `${s.place} ${s.stage}`,
+        s.in.interval_s === null ? "rows" : timeText(s.in.interval_s),
+        timeText(s.out.interval_s),
+        s.taps === null ? "–" : String(s.taps),
+        timeText(s.delay.introduced_s),
+        timeText(s.delay.residual_s),
+        s.look_ahead_s === null ? "record" : timeText(s.look_ahead_s),
+        timeText(s.end_s),
+        s.rise_s === null ? "–" : timeText(s.rise_s),
+      ]),
+    ]),
+  );
+  const { chain } = design;
+  lines.push(
+    "",
+    wrap(
+      `The clean series has a sample every ${timeText(chain.out_interval_s)} and is ${
+        chain.delay_s === 0 ? "not late" : `late by ${timeText(chain.delay_s)}`
+      }; the value at t uses data up to t + ${chain.look_ahead_s === null ? "the whole record" : timeText(chain.look_ahead_s)}.${
+        chain.rise_s === null ? "" : ` A sudden step rises from 10 to 90 % in ${timeText(chain.rise_s)}.`
+      }`,
+      80,
+    ),
+  );
+  for (const s of design.stages) lines.push("", ...stageText(s));
+  if (design.requirements.length > 0) {
+    lines.push("", "requirements");
+    for (const r of design.requirements)
+      lines.push(
+        wrap(
+          `  ${r.met ? "met     " : "NOT MET "} ${r.requirement}${r.channel === null ? "" : ` (${r.channel})`}: ${r.predicted}${
+            r.margin === null ? "" : `, margin ${r.margin}`
+          }`,
+          80,
+          " ".repeat(11),
+        ),
+      );
+  }
+  return lines.join("\n");
+}
+
+function stageText(s: StageAccount): string[] {
+  const lines = [wrap(`${s.place} ${s.stage}: ${s.says}`, 80, "  ")];
+  if (s.gain !== null) {
+    const at = (f: number | number[] | null) =>
+      f === null ? "–" : Array.isArray(f) ? f.map((x) => frequencyText(x)).join(" and ") : frequencyText(f);
+    lines.push(`  gain at 0 Hz ${figure(s.gain.dc, 6)}`);
+    lines.push(`  -1 dB at ${at(s.gain.f_1dB_Hz)}`, `  -3 dB at ${at(s.gain.f_3dB_Hz)}`, `  -6 dB at ${at(s.gain.f_6dB_Hz)}`);
+    lines.push(`  noise bandwidth ${frequencyText(s.enbw_Hz, false)}, overshoot ${figure(s.overshoot_pct, 3)} %`);
+  }
+  if (s.alias !== null)
+    lines.push(
+      wrap(
+        `  aliases: at worst ${frequencyText(s.alias.design_source_Hz, false)} folds into 0 to ${frequencyText(
+          s.alias.kept_to_Hz,
+        )} at ${figure(s.alias.design_worst_gain_dB)} dB (limit ${s.alias.limit_dB} dB)${s.alias.design_met ? "" : ", ACCEPTED in the pipeline"}`,
+        80,
+        "    ",
+      ),
+    );
+  for (const f of s.folds)
+    lines.push(
+      `  ${figure(f.frequency_Hz)} Hz would land at ${frequencyText(f.lands_at_Hz)}, ${figure(f.gain_dB)} dB`,
+    );
+  return lines;
+}
