@@ -13,10 +13,10 @@ import type { LoadedPipeline } from "../pipeline/load.ts";
 import { asDiagnostic } from "../pipeline/plan.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import { readRequest } from "../pipeline/read-request.ts";
-import { intervalSeconds } from "../signal/grid.ts";
 import { accountText, makeAccount } from "../report/account.ts";
 import type { Account, OutputAccount } from "../report/account-format.ts";
 import { renderReportPage } from "../report/page.ts";
+import { intervalSeconds } from "../signal/grid.ts";
 
 export interface SeriesTask {
   readonly loaded: LoadedPipeline;
@@ -55,7 +55,8 @@ export async function cleanSeries(task: SeriesTask): Promise<SeriesOutcome> {
     const read = reading.diagnostics();
     const failed = read.filter((d) => d.severity === "error");
     const timing = measureTiming(() => spool.blocks());
-    if (timing === null) throw new DiagnosticError(failed.length > 0 ? failed : [tooFewRows(task, spool.rows)]);
+    if (timing === null)
+      throw new DiagnosticError(failed.length > 0 ? failed : [tooFewRows(task, spool.rows)]);
     const checked = checkAgainstLog(task, timing);
     if (checked.some((d) => d.severity === "error")) throw new DiagnosticError([...checked, ...failed]);
     const account = publish(task, spool, timing, reading.accounts());
@@ -105,12 +106,7 @@ function checkAgainstLog(task: SeriesTask, timing: Timing): Diagnostic[] {
   return diagnostics;
 }
 
-function publish(
-  task: SeriesTask,
-  spool: RowSpool,
-  timing: Timing,
-  inputs: readonly FileAccount[],
-): Account {
+function publish(task: SeriesTask, spool: RowSpool, timing: Timing, inputs: readonly FileAccount[]): Account {
   const { loaded, plan, name } = task;
   const { writes, channels } = loaded.pipeline;
   const set = new PublishSet(task.folder);

@@ -1,11 +1,13 @@
 /** `forebay clean`: cleans the logs of a pipeline, series by series. */
 import { resolve } from "node:path";
 import { type Diagnostic, DiagnosticError, quoted, renderDiagnostic } from "../diagnostics.ts";
+import { removedLag } from "../engine/run-chain.ts";
 import type { Scope } from "../engine/scope.ts";
 import { findSeries } from "../logs/find-series.ts";
 import { appendRun, type RunLine } from "../outputs/runs-ledger.ts";
-import { loadPipeline, type LoadedPipeline } from "../pipeline/load.ts";
+import { type LoadedPipeline, loadPipeline } from "../pipeline/load.ts";
 import { planPipeline } from "../pipeline/plan.ts";
+import type { Plan } from "../pipeline/plan-types.ts";
 import { parseInstant } from "../pipeline/quantities.ts";
 import { STAGES } from "../stages/registry.ts";
 import { cleanSeries } from "./clean-series.ts";
@@ -14,8 +16,6 @@ import { openJournal } from "./journal.ts";
 import { shownPath } from "./shown-path.ts";
 import { seriesSummary } from "./summary.ts";
 import { VERSION } from "./version.ts";
-import { removedLag } from "../engine/run-chain.ts";
-import type { Plan } from "../pipeline/plan-types.ts";
 
 export interface CleanOptions {
   readonly logs?: readonly string[];
@@ -65,7 +65,10 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
         problem: "no log file is there",
         given: patterns.map(quoted).join(", "),
         allowed: "paths or globs that name at least one file",
-        todo: options.logs === undefined ? "correct logs.files; paths are relative to the pipeline file" : "correct --logs; paths are relative to the current folder",
+        todo:
+          options.logs === undefined
+            ? "correct logs.files; paths are relative to the pipeline file"
+            : "correct --logs; paths are relative to the current folder",
       },
     ]);
     return WRONG;
@@ -80,8 +83,11 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
   let wrongByDesign = 0;
   let unmet = 0;
   for (const { logger, files } of series) {
-    const folder = resolve(options.folder ?? resolve(loaded.folder, pipeline.writes.folder.replaceAll("{logger}", logger ?? "")));
-    const shared = logger !== null && (options.folder !== undefined || !pipeline.writes.folder.includes("{logger}"));
+    const folder = resolve(
+      options.folder ?? resolve(loaded.folder, pipeline.writes.folder.replaceAll("{logger}", logger ?? "")),
+    );
+    const shared =
+      logger !== null && (options.folder !== undefined || !pipeline.writes.folder.includes("{logger}"));
     const name = shared ? `${pipeline.name}-${logger}` : pipeline.name;
     const title = logger === null ? pipeline.name : `${pipeline.name} ${logger}`;
     const fields = { pipeline: pipeline.name, series: logger };
@@ -109,7 +115,8 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
       journal.info({ ...fields, rows: account.timing?.rows ?? 0, met: account.verdict.met }, "cleaned");
     } catch (error) {
       journal.settle();
-      const list = error instanceof DiagnosticError ? error.diagnostics : systemDiagnostic(error, shownPath(folder));
+      const list =
+        error instanceof DiagnosticError ? error.diagnostics : systemDiagnostic(error, shownPath(folder));
       if (list === null) throw error;
       complain(list);
       failed++;
@@ -128,17 +135,26 @@ export function checkRemoved(loaded: LoadedPipeline, plan: Plan): void {
   if (!loaded.pipeline.writes.removed) return;
   const bad = plan.channels.findIndex((_, c) => removedLag(plan, c) === null);
   if (bad < 0) return;
-  const even = plan.stages.find((s) => s.design.taps !== null && s.design.taps.length % 2 === 0 && s.selected.includes(bad));
+  const even = plan.stages.find(
+    (s) => s.design.taps !== null && s.design.taps.length % 2 === 0 && s.selected.includes(bad),
+  );
   throw new DiagnosticError([
     {
       code: "removed-between-samples",
       severity: "error",
       file: loaded.shownName,
       ...loaded.at(["writes", "removed"]),
-      problem: "the clean series lies half-way between the samples of its input, so what was removed has no place on that grid",
-      given: even === undefined ? "a delay that is not a whole number of samples" : `stage ${even.place} (${even.stage}) with ${even.design.taps!.length} points`,
+      problem:
+        "the clean series lies half-way between the samples of its input, so what was removed has no place on that grid",
+      given:
+        even === undefined
+          ? "a delay that is not a whole number of samples"
+          : `stage ${even.place} (${even.stage}) with ${even.design.taps!.length} points`,
       allowed: "windows of odd length",
-      todo: even === undefined ? "set removed: false" : `use ${even.design.taps!.length + 1} points, or set removed: false`,
+      todo:
+        even === undefined
+          ? "set removed: false"
+          : `use ${even.design.taps!.length + 1} points, or set removed: false`,
     },
   ]);
 }
@@ -150,7 +166,15 @@ function scopeOf(options: CleanOptions): Scope {
     if (text === undefined) return open;
     const parsed = parseInstant(text);
     if ("error" in parsed) {
-      problems.push({ code: "bad-time", severity: "error", file: `--${key}`, line: 0, column: 0, problem: "this is not a time", ...parsed.error });
+      problems.push({
+        code: "bad-time",
+        severity: "error",
+        file: `--${key}`,
+        line: 0,
+        column: 0,
+        problem: "this is not a time",
+        ...parsed.error,
+      });
       return open;
     }
     return parsed.us;
@@ -203,7 +227,11 @@ function systemDiagnostic(error: unknown, folder: string): Diagnostic[] | null {
   ];
 }
 
-function runLine(started: Date, name: string, account: Awaited<ReturnType<typeof cleanSeries>>["account"]): RunLine {
+function runLine(
+  started: Date,
+  name: string,
+  account: Awaited<ReturnType<typeof cleanSeries>>["account"],
+): RunLine {
   return {
     started: started.toISOString(),
     ended: new Date().toISOString(),

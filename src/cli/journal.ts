@@ -23,9 +23,13 @@ const REDRAW_MS = 100;
 
 export function openJournal(options: JournalOptions): Journal {
   const toFile =
-    options.file === undefined ? null : pino({ base: null }, pino.destination({ dest: options.file, sync: true, mkdir: true }));
+    options.file === undefined
+      ? null
+      : pino({ base: null }, pino.destination({ dest: options.file, sync: true, mkdir: true }));
   const toStderr =
-    options.terminal || options.quiet ? null : pino({ base: null }, pino.destination({ dest: 2, sync: true }));
+    options.terminal || options.quiet
+      ? null
+      : pino({ base: null }, pino.destination({ dest: 2, sync: true }));
   const started = Date.now();
   let drawn = 0;
   let shown = false;
@@ -48,7 +52,8 @@ export function openJournal(options: JournalOptions): Journal {
       drawn = now;
       shown = true;
       const done = Math.round(BAR * Math.min(1, share));
-      const bar = share > 0 ? `[${"#".repeat(done)}${"-".repeat(BAR - done)}] ${Math.round(100 * share)} %` : "";
+      const bar =
+        share > 0 ? `[${"#".repeat(done)}${"-".repeat(BAR - done)}] ${Math.round(100 * share)} %` : "";
       process.stderr.write(`\r\x1b[K${title}: ${step} ${bar}`);
     },
     settle,

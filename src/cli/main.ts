@@ -9,7 +9,9 @@ import { VERSION } from "./version.ts";
 export async function main(words: readonly string[], streams: Streams): Promise<number> {
   let code = DONE;
   const program = new Command("forebay")
-    .description("Cleans timestamped field logs by a declared chain of stages and accounts for everything it takes out.")
+    .description(
+      "Cleans timestamped field logs by a declared chain of stages and accounts for everything it takes out.",
+    )
     .version(VERSION, "--version", "print the version")
     .helpOption("--help", "print this help")
     .configureHelp({ helpWidth: 80 })

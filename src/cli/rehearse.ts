@@ -44,7 +44,15 @@ export function rehearse(path: string, options: RehearseOptions, streams: Stream
 function intervalOf(text: string): number {
   const parsed = parseDuration(text);
   if (!("error" in parsed)) return parsed.seconds;
-  const d: Diagnostic = { code: "bad-interval", severity: "error", file: "--interval", line: 0, column: 0, problem: "this is not a length of time", ...parsed.error };
+  const d: Diagnostic = {
+    code: "bad-interval",
+    severity: "error",
+    file: "--interval",
+    line: 0,
+    column: 0,
+    problem: "this is not a length of time",
+    ...parsed.error,
+  };
   throw new DiagnosticError([d]);
 }
 
@@ -103,8 +111,14 @@ function stageText(s: StageAccount): string[] {
     const at = (f: number | number[] | null) =>
       f === null ? "–" : Array.isArray(f) ? f.map((x) => frequencyText(x)).join(" and ") : frequencyText(f);
     lines.push(`  gain at 0 Hz ${figure(s.gain.dc, 6)}`);
-    lines.push(`  -1 dB at ${at(s.gain.f_1dB_Hz)}`, `  -3 dB at ${at(s.gain.f_3dB_Hz)}`, `  -6 dB at ${at(s.gain.f_6dB_Hz)}`);
-    lines.push(`  noise bandwidth ${frequencyText(s.enbw_Hz, false)}, overshoot ${figure(s.overshoot_pct, 3)} %`);
+    lines.push(
+      `  -1 dB at ${at(s.gain.f_1dB_Hz)}`,
+      `  -3 dB at ${at(s.gain.f_3dB_Hz)}`,
+      `  -6 dB at ${at(s.gain.f_6dB_Hz)}`,
+    );
+    lines.push(
+      `  noise bandwidth ${frequencyText(s.enbw_Hz, false)}, overshoot ${figure(s.overshoot_pct, 3)} %`,
+    );
   }
   if (s.alias !== null)
     lines.push(

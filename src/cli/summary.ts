@@ -15,11 +15,17 @@ export function seriesSummary(account: Account, title: string, folder: string): 
     say(
       "clock",
       `a row every ${timeText(timing.nominal_interval_s)}${
-        timing.gap_count === 0 ? ", no gap" : `, ${grouped(timing.gap_count)} ${timing.gap_count === 1 ? "gap" : "gaps"}, ${timeText(timing.gap_total_s)} in all`
+        timing.gap_count === 0
+          ? ", no gap"
+          : `, ${grouped(timing.gap_count)} ${timing.gap_count === 1 ? "gap" : "gaps"}, ${timeText(timing.gap_total_s)} in all`
       }${timing.drift_ppm === null ? "" : `, drift ${figure(timing.drift_ppm, 3)} ppm`}`,
     );
-  say("clean", `${grouped(clean.rows)} samples, one every ${timeText(chain.out_interval_s)}: ${chain.first ?? "–"} to ${chain.last ?? "–"}`);
-  for (const [name, channel] of Object.entries(chain.channels)) say("", `${name}: ${statesText(channel.counts)}`);
+  say(
+    "clean",
+    `${grouped(clean.rows)} samples, one every ${timeText(chain.out_interval_s)}: ${chain.first ?? "–"} to ${chain.last ?? "–"}`,
+  );
+  for (const [name, channel] of Object.entries(chain.channels))
+    say("", `${name}: ${statesText(channel.counts)}`);
   for (const stage of account.stages)
     for (const [name, c] of Object.entries(stage.channels)) {
       if (!c.accounted || stage.stage === "report") continue;

@@ -18,12 +18,17 @@ export function timeText(s: number | null): string {
   if (s === 0) return "0 s";
   const size = Math.abs(s);
   const [unit, factor] =
-    size < 1e-3 ? (["µs", 1e-6] as const)
-    : size < 1 ? (["ms", 1e-3] as const)
-    : size < 120 ? (["s", 1] as const)
-    : size < 7200 ? (["min", 60] as const)
-    : size < 172_800 ? (["h", 3600] as const)
-    : (["d", 86_400] as const);
+    size < 1e-3
+      ? (["µs", 1e-6] as const)
+      : size < 1
+        ? (["ms", 1e-3] as const)
+        : size < 120
+          ? (["s", 1] as const)
+          : size < 7200
+            ? (["min", 60] as const)
+            : size < 172_800
+              ? (["h", 3600] as const)
+              : (["d", 86_400] as const);
   return `${figure(s / factor)} ${unit}`;
 }
 
@@ -31,7 +36,14 @@ export function timeText(s: number | null): string {
 export function frequencyText(hz: number | null | undefined, withPeriod = true): string {
   if (hz === null || hz === undefined) return "–";
   if (hz === 0) return "0 Hz";
-  const [unit, factor] = hz < 1e-3 ? (["µHz", 1e-6] as const) : hz < 1 ? (["mHz", 1e-3] as const) : hz < 1000 ? (["Hz", 1] as const) : (["kHz", 1e3] as const);
+  const [unit, factor] =
+    hz < 1e-3
+      ? (["µHz", 1e-6] as const)
+      : hz < 1
+        ? (["mHz", 1e-3] as const)
+        : hz < 1000
+          ? (["Hz", 1] as const)
+          : (["kHz", 1e3] as const);
   return `${figure(hz / factor)} ${unit}${withPeriod ? ` (${timeText(1 / hz)})` : ""}`;
 }
 
@@ -52,7 +64,10 @@ export function wrap(text: string, width: number, indent = ""): string {
 /** Columns padded to their widest cell; the first is flush left, the others flush right. */
 export function table(rows: readonly (readonly string[])[], gap = 2): string {
   const widths: number[] = [];
-  for (const row of rows) row.forEach((cell, i) => { widths[i] = Math.max(widths[i] ?? 0, cell.length); });
+  for (const row of rows)
+    row.forEach((cell, i) => {
+      widths[i] = Math.max(widths[i] ?? 0, cell.length);
+    });
   return rows
     .map((row) =>
       row

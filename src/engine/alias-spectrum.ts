@@ -1,7 +1,7 @@
 import type { PlannedStage } from "../pipeline/plan-types.ts";
 import { foldedFrequency } from "../signal/fold.ts";
-import type { GridBlock } from "../signal/grid-block.ts";
 import { gainAtBins } from "../signal/gain-at-bins.ts";
+import type { GridBlock } from "../signal/grid-block.ts";
 import type { SpectrumPlan } from "../signal/welch.ts";
 import type { IndexRange } from "./index-range.ts";
 import { NodeSpectra } from "./node-spectra.ts";

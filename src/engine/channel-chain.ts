@@ -59,7 +59,14 @@ export class ChannelChain {
     const tapAt = firstDrop >= 0 ? firstDrop : stages.length - 1;
 
     // Nodes are made from the front (they share transforms), sinks are joined from the back.
-    const links: { kernel: Kernel; before: Emit[]; after: Emit[]; drop: Kernel; counts: StateCounts; suspect: boolean }[] = [];
+    const links: {
+      kernel: Kernel;
+      before: Emit[];
+      after: Emit[];
+      drop: Kernel;
+      counts: StateCounts;
+      suspect: boolean;
+    }[] = [];
     let node = new Node(grid, 0, options);
     for (const [i, planned] of stages.entries()) {
       const active = planned.selected.includes(channel);
@@ -171,7 +178,8 @@ export function lagSamples(planned: PlannedStage): number {
 }
 
 function markSuspect(block: GridBlock): void {
-  for (let i = 0; i < block.marks.length; i++) if (!Number.isNaN(block.values[i]!)) block.marks[i]! |= SUSPECT;
+  for (let i = 0; i < block.marks.length; i++)
+    if (!Number.isNaN(block.values[i]!)) block.marks[i]! |= SUSPECT;
 }
 
 /** A place between two stages: makes its transforms once, however many listen. */

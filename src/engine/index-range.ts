@@ -9,7 +9,11 @@ export interface IndexRange {
 
 export function indexRange(grid: Grid, scope: Scope): IndexRange {
   return {
-    from: Number.isFinite(scope.from_us) ? firstIndexAtOrAfter(grid, scope.from_us) : Number.NEGATIVE_INFINITY,
-    until: Number.isFinite(scope.until_us) ? firstIndexAtOrAfter(grid, scope.until_us) : Number.POSITIVE_INFINITY,
+    from: Number.isFinite(scope.from_us)
+      ? firstIndexAtOrAfter(grid, scope.from_us)
+      : Number.NEGATIVE_INFINITY,
+    until: Number.isFinite(scope.until_us)
+      ? firstIndexAtOrAfter(grid, scope.until_us)
+      : Number.POSITIVE_INFINITY,
   };
 }

@@ -4,7 +4,10 @@ import type { SpectrumPlan } from "../signal/welch.ts";
 import type { IndexRange } from "./index-range.ts";
 
 /** One segment's transform, or null where the segment has an absent sample or lies outside the scope. */
-export type SegmentListener = (segment: number, spectrum: { re: Float64Array; im: Float64Array } | null) => void;
+export type SegmentListener = (
+  segment: number,
+  spectrum: { re: Float64Array; im: Float64Array } | null,
+) => void;
 
 /**
  * Cuts one node of a channel's chain into half-overlapping segments anchored to the absolute sample index
@@ -59,7 +62,12 @@ export class NodeSpectra {
   private serve(start: number): void {
     const { segment, bins } = this.plan;
     const end = start + segment;
-    if (start < this.buffer.base || this.lastAbsent >= start || start < this.range.from || end > this.range.until) {
+    if (
+      start < this.buffer.base ||
+      this.lastAbsent >= start ||
+      start < this.range.from ||
+      end > this.range.until
+    ) {
       for (const listen of this.listeners) listen(this.next, null);
       return;
     }

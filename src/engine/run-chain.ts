@@ -2,17 +2,18 @@
  * Runs the chain over the spooled rows of one series: first the passes of stages that must see the record
  * before they can work, then the pass that measures and writes.
  */
+
+import type { RowBlock } from "../logs/rows.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import { firstIndexAtOrAfter, lastIndexAtOrBefore } from "../signal/grid.ts";
-import type { RowBlock } from "../logs/rows.ts";
 import { ChannelChain, lagSamples, type StageMeasure } from "./channel-chain.ts";
 import { ChannelZip, type RowsOut } from "./channel-zip.ts";
 import type { StateCounts } from "./counts.ts";
-import { Extremes } from "./sums.ts";
 import { indexRange } from "./index-range.ts";
 import { RemovedSeries } from "./removed-series.ts";
 import type { Scope } from "./scope.ts";
 import { SpectrumPlans } from "./spectrum-plans.ts";
+import { Extremes } from "./sums.ts";
 import { TimeStrip } from "./time-strip.ts";
 
 /** Rows that can be read from the start again and again. */
@@ -68,7 +69,7 @@ export function runChain(options: RunOptions): ChannelResult[] {
   const drive = (chains: readonly (ChannelChain | null)[]) => {
     let seen = 0;
     for (const block of rows.blocks()) {
-      chains.forEach((chain, c) => chain?.push(block.times, block.columns[c]!, block.count));
+      for (const [c, chain] of chains.entries()) chain?.push(block.times, block.columns[c]!, block.count);
       seen += block.count;
       options.onProgress?.((pass + seen / rows.rows) / passes);
     }
@@ -79,12 +80,22 @@ export function runChain(options: RunOptions): ChannelResult[] {
   for (const depth of lessons) {
     const { design, selected, signalIn } = plan.stages[depth]!;
     const at = signalIn.grid!;
-    const within = { first: firstIndexAtOrAfter(at, rows.first_us), last: lastIndexAtOrBefore(at, rows.last_us) };
+    const within = {
+      first: firstIndexAtOrAfter(at, rows.first_us),
+      last: lastIndexAtOrBefore(at, rows.last_us),
+    };
     const learners = plan.channels.map((_, c) => (selected.includes(c) ? design.learn!(within) : null));
     const chains = learners.map((learner, channel) =>
       learner === null
         ? null
-        : new ChannelChain({ plan, channel, scope, learned: learned[channel]!, depth, sink: (b) => learner.push(b) }),
+        : new ChannelChain({
+            plan,
+            channel,
+            scope,
+            learned: learned[channel]!,
+            depth,
+            sink: (b) => learner.push(b),
+          }),
     );
     drive(chains);
     learners.forEach((learner, c) => {
@@ -101,13 +112,16 @@ export function runChain(options: RunOptions): ChannelResult[] {
   const outRange = indexRange(plan.outGrid, scope);
   const clean = new ChannelZip(plan.channels.length, outRange, options.onClean);
   const removed =
-    options.onRemoved === undefined ? null : new ChannelZip(plan.channels.length, gridRange, options.onRemoved);
+    options.onRemoved === undefined
+      ? null
+      : new ChannelZip(plan.channels.length, gridRange, options.onRemoved);
   const results: ChannelResult[] = [];
   const chains = plan.channels.map((_, channel) => {
     const inputStrip = new TimeStrip(gridRange);
     const cleanStrip = new TimeStrip(outRange);
     const inputExtremes = new Extremes();
-    const pair = removed === null ? null : new RemovedSeries(removedLag(plan, channel) ?? 0, removed.sink(channel));
+    const pair =
+      removed === null ? null : new RemovedSeries(removedLag(plan, channel) ?? 0, removed.sink(channel));
     const cleanSink = clean.sink(channel);
     const chain = new ChannelChain({
       plan,

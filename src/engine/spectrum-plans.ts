@@ -60,7 +60,11 @@ export class SpectrumPlans {
     const key = `${segment} ${interval_s}`;
     let plan = this.made.get(key);
     if (plan === undefined) {
-      plan = new SpectrumPlan({ segment, window: this.report?.window ?? "hann", samplingRate_Hz: 1 / interval_s });
+      plan = new SpectrumPlan({
+        segment,
+        window: this.report?.window ?? "hann",
+        samplingRate_Hz: 1 / interval_s,
+      });
       this.made.set(key, plan);
     }
     return plan;

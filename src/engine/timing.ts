@@ -122,7 +122,10 @@ function medianStep(blocks: () => Iterable<RowBlock>, count: number, longest: nu
   }
 }
 
-function keepLongest(gaps: { from_us: number; to_us: number }[], gap: { from_us: number; to_us: number }): void {
+function keepLongest(
+  gaps: { from_us: number; to_us: number }[],
+  gap: { from_us: number; to_us: number },
+): void {
   gaps.push(gap);
   if (gaps.length <= GAPS_LISTED) return;
   let shortest = 0;

@@ -70,7 +70,14 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
       signal = null;
       continue;
     }
-    planned.push({ place: index + 1, stage: stage.name, signalIn: signal, design, selected, accounted: false });
+    planned.push({
+      place: index + 1,
+      stage: stage.name,
+      signalIn: signal,
+      design,
+      selected,
+      accounted: false,
+    });
     if (isReportDesign(design)) {
       report = design.report;
       reportAt = planned.length - 1;

@@ -1,15 +1,15 @@
 /** Assembles the account of one series (or one day of it). */
 import type { ChannelResult } from "../engine/run-chain.ts";
+import type { TimeStrip } from "../engine/time-strip.ts";
 import type { Timing } from "../engine/timing.ts";
 import type { FileAccount } from "../logs/rows.ts";
 import { isoTime } from "../outputs/cell-text.ts";
-import type { Pipeline } from "../pipeline/schema.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
+import type { Pipeline } from "../pipeline/schema.ts";
 import { convolveTaps } from "../signal/convolve.ts";
-import { intervalSeconds, timeOf } from "../signal/grid.ts";
-import type { TimeStrip } from "../engine/time-strip.ts";
-import { stepResponse } from "../signal/response.ts";
 import type { Grid } from "../signal/grid.ts";
+import { intervalSeconds, timeOf } from "../signal/grid.ts";
+import { stepResponse } from "../signal/response.ts";
 import type {
   Account,
   ChainAccount,
@@ -65,7 +65,12 @@ export function makeAccount(parts: AccountParts): Account {
     },
     logger: parts.logger,
     channels: pipeline.channels.map(({ name, unit, column }) => ({ name, unit, column })),
-    inputs: parts.inputs.map((file) => inputAccount(file, pipeline.channels.map((c) => c.name))),
+    inputs: parts.inputs.map((file) =>
+      inputAccount(
+        file,
+        pipeline.channels.map((c) => c.name),
+      ),
+    ),
     timing: timingAccount(timing, intervalSeconds(plan.gridStage.design.grid)),
     stages,
     chain,
@@ -77,9 +82,22 @@ export function makeAccount(parts: AccountParts): Account {
 }
 
 /** What the design knows: the same keys, without data. */
-export function designAccount(plan: Plan, pipeline: Pipeline): { stages: StageAccount[]; chain: Omit<ChainAccount, "channels" | "first" | "last">; requirements: RequirementAccount[] } {
-  const stages = [plan.gridStage, ...plan.stages].map((s) => stageDesignAccount(plan, s)).sort((a, b) => a.place - b.place);
-  return { stages, chain: chainDesign(plan), requirements: judgeRequirements(plan, pipeline.requirements, null) };
+export function designAccount(
+  plan: Plan,
+  pipeline: Pipeline,
+): {
+  stages: StageAccount[];
+  chain: Omit<ChainAccount, "channels" | "first" | "last">;
+  requirements: RequirementAccount[];
+} {
+  const stages = [plan.gridStage, ...plan.stages]
+    .map((s) => stageDesignAccount(plan, s))
+    .sort((a, b) => a.place - b.place);
+  return {
+    stages,
+    chain: chainDesign(plan),
+    requirements: judgeRequirements(plan, pipeline.requirements, null),
+  };
 }
 
 function inputAccount(file: FileAccount, channels: readonly string[]): InputAccount {
@@ -102,7 +120,10 @@ function inputAccount(file: FileAccount, channels: readonly string[]): InputAcco
     unreadable_cells: Object.fromEntries(
       channels.map((name, c) => [
         name,
-        { count: rows.unreadableCells[c]?.count ?? 0, lines: [...(rows.unreadableCells[c]?.firstLines ?? [])] },
+        {
+          count: rows.unreadableCells[c]?.count ?? 0,
+          lines: [...(rows.unreadableCells[c]?.firstLines ?? [])],
+        },
       ]),
     ),
     found: file.found,
@@ -196,7 +217,12 @@ function chainRise(plan: Plan): number | null {
 }
 
 /** Brings the envelopes before and after to the same columns of time: those of the coarser of the two. */
-function strip(before: TimeStrip, grid: Grid, after: TimeStrip, outGrid: Grid): ChainAccount["channels"][string]["strip"] {
+function strip(
+  before: TimeStrip,
+  grid: Grid,
+  after: TimeStrip,
+  outGrid: Grid,
+): ChainAccount["channels"][string]["strip"] {
   const width_s = (s: TimeStrip, g: Grid) => s.width * intervalSeconds(g);
   const column_s = Math.max(width_s(before, grid), width_s(after, outGrid));
   const start_us = Number.isNaN(before.first) ? 0 : timeOf(grid, before.first * before.width);
@@ -217,7 +243,14 @@ function strip(before: TimeStrip, grid: Grid, after: TimeStrip, outGrid: Grid): 
   };
   const x = spread(before, grid);
   const y = spread(after, outGrid);
-  return { from: isoTime(start_us), column_s, in_low: x.low, in_high: x.high, out_low: y.low, out_high: y.high };
+  return {
+    from: isoTime(start_us),
+    column_s,
+    in_low: x.low,
+    in_high: x.high,
+    out_low: y.low,
+    out_high: y.high,
+  };
 }
 
 /** The account as it is written: stable order, two blanks of indent, long lists of numbers on one line. */
@@ -227,7 +260,8 @@ export function accountText(account: unknown): string {
 
 /** Arrays that hold only numbers and nulls are easier to read, and much shorter, on one line. */
 export function inlineNumbers(json: string): string {
-  return json.replace(/\[\s+((?:-?[\d.eE+-]+|null)(?:,\s+(?:-?[\d.eE+-]+|null))*)\s+\]/g, (_, list: string) =>
-    `[${list.replace(/\s+/g, " ")}]`,
+  return json.replace(
+    /\[\s+((?:-?[\d.eE+-]+|null)(?:,\s+(?:-?[\d.eE+-]+|null))*)\s+\]/g,
+    (_, list: string) => `[${list.replace(/\s+/g, " ")}]`,
   );
 }

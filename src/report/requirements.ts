@@ -1,7 +1,7 @@
 /** Requirements of the pipeline, judged on the design and, where a report stage measured it, on the data. */
 import type { ChannelResult } from "../engine/run-chain.ts";
-import type { Requirements } from "../pipeline/schema.ts";
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
+import type { Requirements } from "../pipeline/schema.ts";
 import { meanGain } from "../signal/filter-figures.ts";
 import { intervalSeconds } from "../signal/grid.ts";
 import { gainAt } from "../signal/response.ts";
@@ -59,7 +59,9 @@ export function judgeRequirements(
       out.push({
         requirement: `keep ${hz(from)} to ${hz(to)} within ${keep.ripple} dB`,
         channel: channel.name,
-        predicted: fits ? `largest departure ${show(worst)} dB` : `not below the clean series' Nyquist frequency, ${hz(0.5 / last)}`,
+        predicted: fits
+          ? `largest departure ${show(worst)} dB`
+          : `not below the clean series' Nyquist frequency, ${hz(0.5 / last)}`,
         measured: measured === null ? null : `${show(measured)} dB over the band`,
         margin: `${show(keep.ripple - worst)} dB`,
         met,
@@ -70,7 +72,8 @@ export function judgeRequirements(
       const to = inHertz(remove.to, first);
       const seen = Math.min(to, 0.5 / first);
       const worst = seen > from ? Math.max(...range(from, seen).map((f) => dB(chainGain(plan, c, f)))) : null;
-      const measured = results === null || worst === null ? null : measuredGain(plan, c, results[c]!, from, seen);
+      const measured =
+        results === null || worst === null ? null : measuredGain(plan, c, results[c]!, from, seen);
       const met =
         worst !== null &&
         worst <= -remove.attenuation + 1e-9 &&
@@ -78,7 +81,10 @@ export function judgeRequirements(
       out.push({
         requirement: `remove ${hz(from)} to ${hz(to)} by ${remove.attenuation} dB`,
         channel: channel.name,
-        predicted: worst === null ? `above the grid's Nyquist frequency, ${hz(0.5 / first)}: not to be judged` : `at least ${show(-worst)} dB`,
+        predicted:
+          worst === null
+            ? `above the grid's Nyquist frequency, ${hz(0.5 / first)}: not to be judged`
+            : `at least ${show(-worst)} dB`,
         measured: measured === null ? null : `${show(-measured)} dB over the band`,
         margin: worst === null ? null : `${show(-worst - remove.attenuation)} dB`,
         met,
@@ -105,7 +111,11 @@ export function chainDelay(plan: Plan): number {
   const perChannel = plan.channels.map((_, c) =>
     plan.stages
       .filter((s) => s.selected.includes(c))
-      .reduce((sum, s) => sum + s.design.delay.samples * intervalSeconds(s.signalIn.grid!) - s.design.delay.compensated_s, 0),
+      .reduce(
+        (sum, s) =>
+          sum + s.design.delay.samples * intervalSeconds(s.signalIn.grid!) - s.design.delay.compensated_s,
+        0,
+      ),
   );
   return perChannel.reduce((a, b) => (Math.abs(b) > Math.abs(a) ? b : a), 0);
 }
@@ -114,14 +124,24 @@ export function chainDelay(plan: Plan): number {
  * Measured gain over a band, dB: the product of the power ratios of the stages that were accounted for.
  * null when a stage that filters was not measured, or its segments are too short to show its filter.
  */
-function measuredGain(plan: Plan, channel: number, result: ChannelResult, from: number, to: number): number | null {
+function measuredGain(
+  plan: Plan,
+  channel: number,
+  result: ChannelResult,
+  from: number,
+  to: number,
+): number | null {
   let gain_dB = 0;
   let any = false;
   for (const [i, planned] of plan.stages.entries()) {
     const interval = intervalSeconds(planned.signalIn.grid!);
-    if (!planned.selected.includes(channel) || planned.design.taps === null || from * interval >= 0.5) continue;
+    if (!planned.selected.includes(channel) || planned.design.taps === null || from * interval >= 0.5)
+      continue;
     const measure = result.measures[i]!;
-    const d = measure.spectra === null || measure.cross === null ? null : densities(measure.spectra.plan, measure.cross);
+    const d =
+      measure.spectra === null || measure.cross === null
+        ? null
+        : densities(measure.spectra.plan, measure.cross);
     if (d === null || d.plan.segment < 2 * planned.design.taps.length) return null;
     const top = Math.min(to, 0.5 / interval);
     const p_in = bandPower(d.xx, d.plan.resolution_Hz, from, top);

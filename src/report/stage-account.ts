@@ -1,14 +1,15 @@
 /** What the account says of one stage: its design's figures, and what was measured on each channel. */
+
+import type { AliasMeasure } from "../engine/alias-spectrum.ts";
 import { lagSamples, type StageMeasure } from "../engine/channel-chain.ts";
 import type { StateCounts } from "../engine/counts.ts";
 import type { ChannelResult } from "../engine/run-chain.ts";
-import type { AliasMeasure } from "../engine/alias-spectrum.ts";
+import type { Extremes } from "../engine/sums.ts";
 import { isoTime } from "../outputs/cell-text.ts";
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
 import { filterFigures } from "../signal/filter-figures.ts";
 import { foldedFrequency } from "../signal/fold.ts";
 import { type Grid, intervalSeconds, timeOf } from "../signal/grid.ts";
-import type { Extremes } from "../engine/sums.ts";
 import { bandPower } from "../signal/welch.ts";
 import type { AliasAccount, ChannelAccount, Extreme, StageAccount } from "./account-format.ts";
 import { stageGain } from "./requirements.ts";
@@ -72,7 +73,8 @@ export function stageDesignAccount(plan: Plan, planned: PlannedStage): StageAcco
 /** The value at t uses data up to t + this: an even centred window reaches half a sample less than its index. */
 export function lookAhead(planned: PlannedStage, interval_s: number): number {
   const { design } = planned;
-  const shift = design.grid !== planned.signalIn.grid && design.keepEvery === 1 && planned.signalIn.grid !== null;
+  const shift =
+    design.grid !== planned.signalIn.grid && design.keepEvery === 1 && planned.signalIn.grid !== null;
   const half = shift && design.grid.offset !== planned.signalIn.grid!.offset ? 0.5 : 0;
   return ((design.reach?.after ?? 0) - half) * interval_s;
 }
@@ -117,7 +119,12 @@ export function stageAccount(
 }
 
 /** The stage that puts rows onto the grid: no input on the same grid, so nothing is said to be removed. */
-export function gridStageAccount(plan: Plan, results: readonly ChannelResult[], rows: number, nominal_s: number): StageAccount {
+export function gridStageAccount(
+  plan: Plan,
+  results: readonly ChannelResult[],
+  rows: number,
+  nominal_s: number,
+): StageAccount {
   const { gridStage } = plan;
   const account = stageDesignAccount(plan, gridStage);
   const channels: Record<string, ChannelAccount> = {};
@@ -155,7 +162,12 @@ export function gridStageAccount(plan: Plan, results: readonly ChannelResult[], 
 const meanGains = (interval_s: number) =>
   [0.05, 0.1, 0.2, 0.3, 0.4, 0.5].map((share) => ({ share, f_Hz: share / interval_s }));
 
-function channelAccount(plan: Plan, planned: PlannedStage, measure: StageMeasure, unit: string): ChannelAccount {
+function channelAccount(
+  plan: Plan,
+  planned: PlannedStage,
+  measure: StageMeasure,
+  unit: string,
+): ChannelAccount {
   const base = { ...unmeasured(unit), ...counted(measure.counts) };
   const { comparison } = measure;
   if (comparison === null || plan.report === null) return base;
@@ -163,7 +175,9 @@ function channelAccount(plan: Plan, planned: PlannedStage, measure: StageMeasure
   const outGrid: Grid = planned.design.keepEvery > 1 ? grid : planned.design.grid;
   const sums = comparison.sums.figures();
   const d =
-    measure.cross === null || measure.spectra === null ? null : densities(measure.spectra.plan, measure.cross);
+    measure.cross === null || measure.spectra === null
+      ? null
+      : densities(measure.spectra.plan, measure.cross);
   const { taps } = planned.design;
   const whole = Math.abs(lagSamples(planned) - Math.round(lagSamples(planned))) < 1e-9;
   return {
@@ -176,7 +190,11 @@ function channelAccount(plan: Plan, planned: PlannedStage, measure: StageMeasure
     rms_out: sums === null ? null : Math.sqrt(sums.varianceOut),
     rms_removed: sums === null ? spectralRms(d) : Math.sqrt(sums.varianceRemoved),
     variance_removed_pct:
-      sums === null ? spectralShare(d) : sums.varianceIn > 0 ? (100 * sums.varianceRemoved) / sums.varianceIn : 0,
+      sums === null
+        ? spectralShare(d)
+        : sums.varianceIn > 0
+          ? (100 * sums.varianceRemoved) / sums.varianceIn
+          : 0,
     basis: sums !== null ? "samples" : d !== null && !whole ? "segment spectra" : null,
     extremes: {
       highest_in: extreme(comparison.before, grid, "high"),
@@ -265,7 +283,8 @@ function upstreamGain(plan: Plan, planned: PlannedStage, f_Hz: number): number {
   let gain = 1;
   for (const stage of plan.stages) {
     const interval = intervalSeconds(stage.signalIn.grid!);
-    if (stage.selected.includes(planned.selected[0]!) && f_Hz * interval <= 0.5) gain *= stageGain(stage, f_Hz * interval);
+    if (stage.selected.includes(planned.selected[0]!) && f_Hz * interval <= 0.5)
+      gain *= stageGain(stage, f_Hz * interval);
     if (stage === planned) break;
   }
   return gain;
@@ -278,7 +297,8 @@ function aliasAccount(
   const alias = planned.design.alias!;
   let worst: { channel: string; measure: AliasMeasure } | null = null;
   for (const { channel, measure } of measured)
-    if (measure !== null && (worst === null || measure.ratio_dB > worst.measure.ratio_dB)) worst = { channel, measure };
+    if (measure !== null && (worst === null || measure.ratio_dB > worst.measure.ratio_dB))
+      worst = { channel, measure };
   return {
     anti_alias: alias.antiAlias,
     accepted: alias.accepted,

@@ -34,8 +34,11 @@ export function verdictOf(
       );
   }
   if (Math.abs(chain.delay_s) > 0)
-    remarks.push(`The clean series is late by ${Number(chain.delay_s.toPrecision(6))} s: a change at t shows at t plus that.`);
+    remarks.push(
+      `The clean series is late by ${Number(chain.delay_s.toPrecision(6))} s: a change at t shows at t plus that.`,
+    );
   return { met, remarks };
 }
 
-const hz = (f: number | null): string => (f === null ? "an unknown frequency" : `${Number(f.toPrecision(4))} Hz`);
+const hz = (f: number | null): string =>
+  f === null ? "an unknown frequency" : `${Number(f.toPrecision(4))} Hz`;

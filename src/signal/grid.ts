@@ -18,9 +18,9 @@ export interface Grid {
   readonly offset: number;
 }
 
-/** @param num, den  the interval in microseconds, positive integers with num * den < 2^52 */
+/** @param num, den  the interval in microseconds, at least 1; positive integers with num * den < 2^52 */
 export function makeGrid(num: number, den: number, anchor_us = 0): Grid {
-  if (!(num > 0 && den > 0 && Number.isInteger(num) && Number.isInteger(den) && num * den < 2 ** 52))
+  if (!(num >= den && den > 0 && Number.isInteger(num) && Number.isInteger(den) && num * den < 2 ** 52))
     throw new RangeError(`grid interval ${num}/${den} us is outside what can be held exactly`);
   const evenNum = num % 2 === 0;
   const halfNum = evenNum ? num / 2 : num;
@@ -47,7 +47,9 @@ export function timeOf(grid: Grid, k: number): number {
   const m = grid.stride * k + grid.offset;
   const q = Math.floor(m / grid.halfDen);
   const r = m - q * grid.halfDen;
-  return grid.anchor_us + q * grid.halfNum + Math.floor((2 * r * grid.halfNum + grid.halfDen) / (2 * grid.halfDen));
+  return (
+    grid.anchor_us + q * grid.halfNum + Math.floor((2 * r * grid.halfNum + grid.halfDen) / (2 * grid.halfDen))
+  );
 }
 
 /** Time of sample k minus `t_us`, in microseconds, without rounding the sample's time first. */

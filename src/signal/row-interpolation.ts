@@ -5,7 +5,7 @@
  * are farther apart than `longestGap_us` nothing is put there. A point on which a row falls exactly, or
  * whose two rows are at most 1.5 grid intervals apart, is measured; any other bridged point is filled.
  */
-import { type Grid, firstIndexAtOrAfter, intervalSeconds, lastIndexAtOrBefore, timeSince } from "./grid.ts";
+import { firstIndexAtOrAfter, type Grid, intervalSeconds, lastIndexAtOrBefore, timeSince } from "./grid.ts";
 import type { Emit, GridBlock } from "./grid-block.ts";
 import { FILLED, MISSING } from "./marks.ts";
 
@@ -74,11 +74,12 @@ export class RowInterpolator {
       this.lastRow_us = t;
       if (Number.isNaN(v)) {
         // Once the gap is too long to bridge, what lies in it is known to be missing whatever comes.
-        if (!(t - this.previous_us <= this.longestGap_us)) this.blankTo(lastIndexAtOrBefore(this.grid, t), emit);
+        if (!(t - this.previous_us <= this.longestGap_us))
+          this.blankTo(lastIndexAtOrBefore(this.grid, t), emit);
         continue;
       }
       const gap = t - this.previous_us;
-      if (gap <= this.longestGap_us) this.bridge(t, v, gap, emit);
+      if (gap <= this.longestGap_us) this.bridge(v, gap, emit);
       else this.land(t, v, emit);
       this.previous_us = t;
       this.previous = v;
@@ -103,7 +104,7 @@ export class RowInterpolator {
   }
 
   /** The points after the previous row up to t, between two rows near enough to each other. */
-  private bridge(t: number, v: number, gap: number, emit: Emit): void {
+  private bridge(v: number, gap: number, emit: Emit): void {
     for (;;) {
       const since = timeSince(this.grid, this.next, this.previous_us);
       if (since > gap) return;

@@ -50,7 +50,7 @@ export function runningMean(
     for (let i = 0; i < inBlock - 1 + here; i++) {
       if (i >= inBlock) {
         const k = i;
-        out[outStart + o + k - inBlock] = joined(high[k]!, low[k]!, ph, pl) / n;
+        out[outStart + o + k - inBlock] = quotient(high[k]!, low[k]!, ph, pl, n);
       }
       const v = x[base + n + i]!;
       const sum = ph + v;
@@ -59,13 +59,31 @@ export function runningMean(
       ph = sum;
     }
     const k = inBlock + here - 1;
-    out[outStart + o + k - inBlock] = joined(high[k]!, low[k]!, ph, pl) / n;
+    out[outStart + o + k - inBlock] = quotient(high[k]!, low[k]!, ph, pl, n);
     o += here;
   }
 }
 
-function joined(ah: number, al: number, bh: number, bl: number): number {
+/** (a + b) / n, where a and b are each held as a rounded sum and what the rounding lost. */
+function quotient(ah: number, al: number, bh: number, bl: number, n: number): number {
   const sum = ah + bh;
   const part = sum - ah;
-  return sum + (ah - (sum - part) + (bh - part) + (al + bl));
+  const low = ah - (sum - part) + (bh - part) + (al + bl);
+  const q = sum / n;
+  // Without the remainder, three times 0.1 divided by three would not be 0.1 again.
+  const product = q * n;
+  const rest = sum - product - productError(q, n, product) + low;
+  const mean = q + rest / n;
+  return Number.isFinite(mean) ? mean : q;
+}
+
+/** What rounding lost in a * b (T. J. Dekker 1971, Numerische Mathematik 18, 224-242; recalled from memory). */
+function productError(a: number, b: number, product: number): number {
+  const ca = 134217729 * a;
+  const ah = ca - (ca - a);
+  const al = a - ah;
+  const cb = 134217729 * b;
+  const bh = cb - (cb - b);
+  const bl = b - bh;
+  return al * bl - (product - ah * bh - al * bh - ah * bl);
 }

@@ -177,7 +177,8 @@ export class WindowKernel implements Kernel {
 
   /** The present samples next to each other that hold the output's own place, inside [lo, hi). */
   private runAround(k: number, lo: number, hi: number): { from: number; to: number } | undefined {
-    const there = (i: number) => i >= lo && i < hi && !Number.isNaN(this.buffer.values[i - this.buffer.base]!);
+    const there = (i: number) =>
+      i >= lo && i < hi && !Number.isNaN(this.buffer.values[i - this.buffer.base]!);
     const own = there(k) ? k : this.options.betweenSamples && there(k + 1) ? k + 1 : undefined;
     if (own === undefined) return undefined;
     let from = own;

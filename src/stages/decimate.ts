@@ -9,18 +9,21 @@ import { coarserGrid, intervalSeconds } from "../signal/grid.ts";
 import { keepEvery } from "../signal/grid-block.ts";
 import { designBySpecification } from "../signal/specification.ts";
 import { WindowKernel } from "../signal/window-kernel.ts";
-import { worstFold } from "./parts/worst-fold.ts";
 import { windowPoints } from "./parts/lengths.ts";
+import { worstFold } from "./parts/worst-fold.ts";
 import type { AliasDesign, DesignOutcome, Problem, Signal, Stage } from "./stage.ts";
 
 const MOST = 1_000_000;
 
 const settings = stageSettings("decimate", {
   by: count({ min: 2, max: MOST, about: "Keep one sample in this many." }).optional(),
-  to: durationOrRate({ about: "The new sample interval (or rate): a whole multiple of the interval before." }).optional(),
+  to: durationOrRate({
+    about: "The new sample interval (or rate): a whole multiple of the interval before.",
+  }).optional(),
   "anti-alias": oneOf(["designed", "upstream"], {
     default: "designed",
-    about: "Design a filter against aliases here, or rely on the stages above, whose response is then checked.",
+    about:
+      "Design a filter against aliases here, or rely on the stages above, whose response is then checked.",
   }),
   "passband-share": percent({
     min: 0.05,
@@ -28,14 +31,22 @@ const settings = stageSettings("decimate", {
     default: "40 %",
     about: "Share of the new rate that is kept free of aliases and at full height.",
   }),
-  attenuation: decibels({ min: 10, max: 200, default: "80 dB", about: "Attenuation of the designed filter." }),
+  attenuation: decibels({
+    min: 10,
+    max: 200,
+    default: "80 dB",
+    about: "Attenuation of the designed filter.",
+  }),
   "alias-limit": decibels({
     min: -200,
     max: 0,
     default: "-60 dB",
     about: "Most that may fold into the band kept, checked on the design and on the data.",
   }),
-  "accept-aliasing": truth({ default: false, about: "Go on although the check on the design fails; recorded." }),
+  "accept-aliasing": truth({
+    default: false,
+    about: "Go on although the check on the design fails; recorded.",
+  }),
 });
 type Settings = z.output<typeof settings>;
 

@@ -13,7 +13,12 @@ import type { DesignOutcome, Problem, Signal, Stage } from "./stage.ts";
 const TRENDS_LISTED = 400;
 
 const settings = stageSettings("detrend", {
-  degree: count({ min: 0, max: 5, default: 1, about: "Degree of the polynomial: 0 the mean, 1 a line, up to 5." }),
+  degree: count({
+    min: 0,
+    max: 5,
+    default: 1,
+    about: "Degree of the polynomial: 0 the mean, 1 a line, up to 5.",
+  }),
   over: durationOr(["whole"], {
     default: "whole",
     about: "What one trend is fitted to: the whole record, or spans of this length anchored to the grid.",

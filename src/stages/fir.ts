@@ -4,16 +4,17 @@
  */
 import type { z } from "zod";
 import { count, decibels, finite, frequency, list, oneOf, stageSettings } from "../pipeline/kinds.ts";
-import { intervalSeconds } from "../signal/grid.ts";
+import { halfStepLater, intervalSeconds } from "../signal/grid.ts";
 import { symmetryOf } from "../signal/response.ts";
 import { WindowKernel } from "../signal/window-kernel.ts";
 import { chooseTaps } from "./parts/fir-taps.ts";
 import { unevenSelection } from "./parts/lengths.ts";
-import { halfStepLater } from "../signal/grid.ts";
 import type { DesignOutcome, Problem, Signal, Stage } from "./stage.ts";
 
 const settings = stageSettings("fir", {
-  shape: oneOf(["low-pass", "high-pass", "band-pass", "band-stop"], { about: "What the filter lets pass." }).optional(),
+  shape: oneOf(["low-pass", "high-pass", "band-pass", "band-stop"], {
+    about: "What the filter lets pass.",
+  }).optional(),
   pass: list(frequency({ about: "A passband edge." }), {
     min: 1,
     max: 2,
@@ -26,8 +27,16 @@ const settings = stageSettings("fir", {
     single: true,
     about: "Stopband edge, two for band shapes.",
   }).optional(),
-  ripple: decibels({ min: 1e-6, max: 12, about: "Largest departure from gain 1 in the passband; default 0.1 dB." }).optional(),
-  attenuation: decibels({ min: 1, max: 200, about: "Least attenuation in the stopband; default 60 dB." }).optional(),
+  ripple: decibels({
+    min: 1e-6,
+    max: 12,
+    about: "Largest departure from gain 1 in the passband; default 0.1 dB.",
+  }).optional(),
+  attenuation: decibels({
+    min: 1,
+    max: 200,
+    about: "Least attenuation in the stopband; default 60 dB.",
+  }).optional(),
   method: oneOf(["auto", "windowed-sinc"], { default: "auto", about: "How the taps are designed." }),
   taps: count({ min: 1, max: 20_001, about: "Number of taps; with edge and window." }).optional(),
   edge: list(frequency({ about: "An edge where the gain is -6 dB." }), {
@@ -47,11 +56,13 @@ const settings = stageSettings("fir", {
   }).optional(),
   reach: oneOf(["both-sides", "past-only"], {
     default: "both-sides",
-    about: "Samples that the filter may use: both sides of its time (no delay, uses the future) or the past only.",
+    about:
+      "Samples that the filter may use: both sides of its time (no delay, uses the future) or the past only.",
   }),
   ends: oneOf(["blank", "part-window", "turned"], {
     default: "blank",
-    about: "At the ends of a run: no value, the part of the filter inside, or the signal turned about its end.",
+    about:
+      "At the ends of a run: no value, the part of the filter inside, or the signal turned about its end.",
   }),
 });
 export type FirSettings = z.output<typeof settings>;
@@ -72,7 +83,8 @@ function design(s: FirSettings, signal: Signal, selected: readonly number[]): De
       code: "centred-needs-symmetry",
       severity: "error",
       path: ["reach"],
-      problem: "taps without symmetry have no centre, so the filter cannot be centred without moving the signal",
+      problem:
+        "taps without symmetry have no centre, so the filter cannot be centred without moving the signal",
       given: "both-sides with taps that are not symmetric",
       allowed: "symmetric taps, or past-only",
       todo: "set reach: past-only",

@@ -22,7 +22,8 @@ const settings = stageSettings("moving-average", {
   }).optional(),
   reach: oneOf(["both-sides", "past-only"], {
     default: "both-sides",
-    about: "Samples that the window may use: both sides of its time (no delay, uses the future) or the past only.",
+    about:
+      "Samples that the window may use: both sides of its time (no delay, uses the future) or the past only.",
   }),
   coverage: percent({
     min: 0.01,
@@ -32,7 +33,8 @@ const settings = stageSettings("moving-average", {
   }),
   ends: oneOf(["blank", "part-window", "turned"], {
     default: "blank",
-    about: "At the ends of a run: no value, the part of the window inside, or the signal turned about its end.",
+    about:
+      "At the ends of a run: no value, the part of the window inside, or the signal turned about its end.",
   }),
 });
 type Settings = z.output<typeof settings>;
@@ -75,7 +77,9 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
 
   const equal = s.weights === undefined;
   // Weights are given in order of time; taps are in order of convolution.
-  const taps = equal ? new Float64Array(n).fill(1 / n) : Float64Array.from(s.weights!, (w) => w / sum).reverse();
+  const taps = equal
+    ? new Float64Array(n).fill(1 / n)
+    : Float64Array.from(s.weights!, (w) => w / sum).reverse();
   const after = centred ? Math.floor(n / 2) : 0;
   const symmetric = taps.every((w, i) => w === taps[n - 1 - i]);
   const delay = symmetric ? (n - 1) / 2 : centroid(taps);

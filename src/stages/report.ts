@@ -1,16 +1,17 @@
 /** `report`: accounts for every stage above it; the data pass unchanged. */
 import type { z } from "zod";
 import { count, frequency, oneOf, record, stageSettings, strictObject } from "../pipeline/kinds.ts";
-import { inHertz } from "./parts/frequencies.ts";
-import { passOn } from "../signal/grid-block.ts";
 import { intervalSeconds } from "../signal/grid.ts";
+import { passOn } from "../signal/grid-block.ts";
+import { inHertz } from "./parts/frequencies.ts";
 import type { DesignOutcome, Problem, ReportDesign, Signal, Stage } from "./stage.ts";
 
 const FINEST_SEGMENT = 2 ** 18;
 
 const settings = stageSettings("report", {
   resolution: frequency({
-    about: "Bin spacing of the spectra, met or bettered by a power of two; by default the record's length decides.",
+    about:
+      "Bin spacing of the spectra, met or bettered by a power of two; by default the record's length decides.",
   }).optional(),
   window: oneOf(["hann", "hamming", "blackman", "rectangular"], {
     default: "hann",

@@ -20,7 +20,8 @@ const settings = stageSettings("resample", {
     about: "Value between two rows: on the straight line that joins them, or that of the nearer one.",
   }),
   "longest-gap": duration({
-    about: "Rows farther apart than this are not joined: the grid is blank between them; default 2 intervals.",
+    about:
+      "Rows farther apart than this are not joined: the grid is blank between them; default 2 intervals.",
   }).optional(),
   anchor: instant({ about: "A time on which a grid sample falls; default 1970-01-01T00:00:00Z." }).optional(),
   "accept-aliasing": truth({
@@ -57,7 +58,8 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
   const step = s.interval?.us ?? s.rate!.interval_us;
   const grid = makeGrid(step.num, step.den, s.anchor?.us ?? 0);
   const interval = intervalSeconds(grid);
-  const longestGap_us = s["longest-gap"] === undefined ? 2e6 * interval : s["longest-gap"].us.num / s["longest-gap"].us.den;
+  const longestGap_us =
+    s["longest-gap"] === undefined ? 2e6 * interval : s["longest-gap"].us.num / s["longest-gap"].us.den;
   if (longestGap_us < 1e6 * interval)
     problems.push({
       code: "longest-gap-short",
@@ -86,7 +88,10 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       },
       taps: null,
       delay: { samples: 0, indexSamples: 0, compensated_s: 0 },
-      reach: { before: Math.ceil(longestGap_us / 1e6 / interval), after: Math.ceil(longestGap_us / 1e6 / interval) },
+      reach: {
+        before: Math.ceil(longestGap_us / 1e6 / interval),
+        after: Math.ceil(longestGap_us / 1e6 / interval),
+      },
       end_s: 0,
       keepEvery: 1,
       alias: null,

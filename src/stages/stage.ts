@@ -3,9 +3,9 @@
  * any data), and its kernel at work on the data. Everything else of the house treats all stages alike.
  */
 import type { z } from "zod";
-import type { WindowKind } from "../signal/windows.ts";
 import type { Grid } from "../signal/grid.ts";
 import type { GridBlock, Kernel } from "../signal/grid-block.ts";
+import type { WindowKind } from "../signal/windows.ts";
 
 /** A filter at the rate of its grid, for combined responses. */
 export interface FilterTaps {

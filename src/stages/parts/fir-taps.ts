@@ -1,3 +1,4 @@
+import type { Frequency } from "../../pipeline/quantities.ts";
 import { DesignError } from "../../signal/design-error.ts";
 import { groupDelayOf } from "../../signal/response.ts";
 import { designBySpecification } from "../../signal/specification.ts";
@@ -5,7 +6,6 @@ import { designWindowedSinc, type FilterShape } from "../../signal/windowed-sinc
 import type { FirSettings } from "../fir.ts";
 import type { Problem } from "../stage.ts";
 import { inCyclesPerSample } from "./frequencies.ts";
-import type { Frequency } from "../../pipeline/quantities.ts";
 
 export interface ChosenTaps {
   /** In order of convolution. */
@@ -85,7 +85,9 @@ function given(coefficients: readonly number[]): ChosenTaps {
     taps,
     says: "Filtered with the taps given:",
     settings: { coefficients: "given" },
-    notes: delay.constant ? {} : { group_delay_lowest_samples: delay.lowest, group_delay_highest_samples: delay.highest },
+    notes: delay.constant
+      ? {}
+      : { group_delay_lowest_samples: delay.lowest, group_delay_highest_samples: delay.highest },
     delay: delay.samples,
   };
 }
@@ -101,7 +103,15 @@ function bySpecification(
   if (pass === null || stop === null || !inOrder(shape, pass, stop, interval_s, problems)) return null;
   const ripple_dB = s.ripple ?? DEFAULT_RIPPLE_dB;
   const attenuation_dB = s.attenuation ?? DEFAULT_ATTENUATION_dB;
-  const made = designBySpecification({ shape, pass, stop, ripple_dB, attenuation_dB, method: "windowed-sinc", parity: "odd" });
+  const made = designBySpecification({
+    shape,
+    pass,
+    stop,
+    ripple_dB,
+    attenuation_dB,
+    method: "windowed-sinc",
+    parity: "odd",
+  });
   const hz = (f: number) => f / interval_s;
   return {
     taps: made.taps,
@@ -125,7 +135,12 @@ function bySpecification(
   };
 }
 
-function bySize(s: FirSettings, shape: FilterShape, interval_s: number, problems: Problem[]): ChosenTaps | null {
+function bySize(
+  s: FirSettings,
+  shape: FilterShape,
+  interval_s: number,
+  problems: Problem[],
+): ChosenTaps | null {
   if (s.taps === undefined) problems.push(missing("taps", "a count"));
   const edge = edges(s.edge, "edge", shape, interval_s, problems);
   const window = s.window ?? "hamming";

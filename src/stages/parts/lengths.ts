@@ -56,7 +56,8 @@ export function unevenSelection(
     code: "even-length-on-some-channels",
     severity: "error",
     path: ["channels"],
-    problem: "a centred window of even length moves the grid by half an interval, so all channels must pass it",
+    problem:
+      "a centred window of even length moves the grid by half an interval, so all channels must pass it",
     given: `${n} points on ${selected.length} of ${signal.channels.length} channels`,
     allowed: "an odd number of points, or all channels",
     todo: `use ${n + 1} points`,
