@@ -29,8 +29,20 @@ export function parseInstant(text: string): Instant | Refused {
   const match = FORM.exec(clean);
   if (match === null)
     return refused("a time in ISO 8601, with Z or an offset", "write for instance 2031-03-04T00:00:00Z");
-  const [, year, month, day, hour, minute, second = "0", fraction = "", zone, sign, offsetHours, offsetMinutes] =
-    match;
+  const [
+    ,
+    year,
+    month,
+    day,
+    hour,
+    minute,
+    second = "0",
+    fraction = "",
+    zone,
+    sign,
+    offsetHours,
+    offsetMinutes,
+  ] = match;
   if (hour !== undefined && zone === undefined)
     return refused("a time with Z or an offset", `write ${clean}Z when it is in UTC`);
   if (fraction.length > 6) return refused("at most 6 digits after the second's point", "use fewer digits");

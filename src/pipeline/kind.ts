@@ -46,7 +46,7 @@ export class Misfit {
 
 export type Kind<T> = z.ZodType<T, unknown>;
 
-const FACTS = z.registry<KindFacts>();
+const FACTS = new WeakMap<z.core.$ZodType, KindFacts>();
 
 /** Facts of a kind, looked up through `optional` and defaults; undefined for a plain object schema. */
 export function factsOf(schema: z.core.$ZodType): KindFacts | undefined {
@@ -79,13 +79,15 @@ export function makeKind<T>(facts: KindFacts, read: ReadValue<T>, fallback?: unk
     if ("is" in result) return result.is;
     for (const { at, issues } of result)
       for (const issue of issues)
-        ctx.addIssue({ ...issue, path: [at, ...issue.path], input: undefined } as z.core.$ZodRawIssue);
+        ctx.issues.push({ ...issue, path: [at, ...issue.path], input: undefined } as z.core.$ZodRawIssue);
     return z.NEVER;
   });
-  kind.register(FACTS, facts);
+  FACTS.set(kind, facts);
   if (fallback === undefined) return kind;
   if (!kind.safeParse(fallback).success) throw new Error(`default of "${facts.about}" does not fit`);
-  return kind.prefault(fallback as never).register(FACTS, facts) as Kind<T>;
+  const withFallback = kind.prefault(fallback as never);
+  FACTS.set(withFallback, facts);
+  return withFallback;
 }
 
 function nothing(value: undefined | null, facts: KindFacts): Misfit {
@@ -162,7 +164,13 @@ export function quantityKind<T extends object, U>(
 
 export function wrongType(value: unknown, wanted: string, facts: KindFacts): Misfit {
   const word =
-    typeof value === "boolean" ? "true or false" : Array.isArray(value) ? "a list" : typeof value === "object" ? "a mapping" : `a ${typeof value}`;
+    typeof value === "boolean"
+      ? "true or false"
+      : Array.isArray(value)
+        ? "a list"
+        : typeof value === "object"
+          ? "a mapping"
+          : `a ${typeof value}`;
   return new Misfit(`${word} stands where ${wanted} is meant`, {
     code: "wrong-type",
     given: shown(value),

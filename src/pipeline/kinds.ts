@@ -5,7 +5,6 @@ import { type Kind, type KindFacts, Misfit, makeKind, quantityKind, shown, wrong
 import {
   type Duration,
   type Frequency,
-  formatDuration,
   type Instant,
   type Level,
   PATTERNS,
@@ -24,6 +23,7 @@ import {
 
 export { list, record, stageSettings, strictObject } from "./collections.ts";
 export { factsOf, type JsonSchema, type Kind, type KindFacts } from "./kind.ts";
+export { name, text } from "./texts.ts";
 
 /** What every kind is told: one sentence, and the default as it would stand in the file. */
 interface Told<D> {
@@ -35,7 +35,7 @@ interface Range {
   readonly max?: number;
 }
 
-const text = (pattern: string) => () => ({ type: "string", pattern });
+const matching = (pattern: string) => () => ({ type: "string", pattern });
 const withDefault = (d: string | number | boolean | undefined) =>
   d === undefined ? {} : { default: String(d) };
 
@@ -69,7 +69,7 @@ function durationFacts(o: DurationTold): KindFacts {
     ...withDefault(o.default),
     allowed: `a number with one of ${TIME_UNITS}; ${bounds}`,
     example: o.default ?? o.min ?? "10 s",
-    json: text(PATTERNS.duration),
+    json: matching(PATTERNS.duration),
   };
 }
 
@@ -89,10 +89,7 @@ function inDurationRange(d: Duration, o: DurationTold) {
 }
 
 /** A length of time or one of some words: `durationOr(["whole"], …)`. */
-export function durationOr<const W extends string>(
-  words: readonly W[],
-  o: DurationTold,
-): Kind<Duration | W> {
+export function durationOr<const W extends string>(words: readonly W[], o: DurationTold): Kind<Duration | W> {
   const plain = durationFacts(o);
   const facts = {
     ...plain,
@@ -121,7 +118,7 @@ export function durationOrRate(o: Told<string>): Kind<Duration> {
       ...withDefault(o.default),
       allowed: `an interval with one of ${TIME_UNITS}, or a rate with one of ${HERTZ_UNITS}; above zero`,
       example: o.default ?? "1 min",
-      json: text(PATTERNS.durationOrRate),
+      json: matching(PATTERNS.durationOrRate),
     },
     (given): Duration | Refused => {
       if (!/Hz\s*$/.test(given)) return parseDuration(given);
@@ -153,7 +150,7 @@ export function frequency(o: FrequencyTold): Kind<Frequency> {
         o.zero === true ? "0 Hz or more" : "above 0 Hz"
       }`,
       example: o.default ?? "0.5 Hz",
-      json: text(perSample ? PATTERNS.frequency : PATTERNS.frequencyInHertz),
+      json: matching(perSample ? PATTERNS.frequency : PATTERNS.frequencyInHertz),
     },
     parseFrequency,
     (f) => {
@@ -161,7 +158,10 @@ export function frequency(o: FrequencyTold): Kind<Frequency> {
       if (size === 0 && o.zero !== true)
         return { problem: "the frequency is zero", todo: "write a frequency above zero" };
       if (f.kind === "cycles-per-sample" && !perSample)
-        return { problem: "cycles/sample has no meaning outside a stage", todo: "write it in Hz or as a period" };
+        return {
+          problem: "cycles/sample has no meaning outside a stage",
+          todo: "write it in Hz or as a period",
+        };
       return { is: f };
     },
     o.default,
@@ -178,7 +178,7 @@ export function rate(o: Told<string>): Kind<Rate> {
       ...withDefault(o.default),
       allowed: `a number with one of ${HERTZ_UNITS}; above 0 Hz`,
       example: o.default ?? "10 Hz",
-      json: text(PATTERNS.rate),
+      json: matching(PATTERNS.rate),
     },
     parseRate,
     (r) => ({ is: r }),
@@ -196,7 +196,7 @@ export function instant(o: Told<string>): Kind<Instant> {
       ...withDefault(o.default),
       allowed: "a date, or a date and time with Z or an offset, in ISO 8601",
       example: o.default ?? "2031-03-04T00:00:00Z",
-      json: text(INSTANT_PATTERN),
+      json: matching(INSTANT_PATTERN),
     },
     parseInstant,
     (t) => ({ is: t }),
@@ -235,7 +235,7 @@ function level(
       ...withDefault(o.default),
       allowed: `a number with ${unit}${bounds === "" ? "" : `; ${bounds}`}`,
       example: o.default ?? show(o.max ?? o.min ?? 20 / scale),
-      json: text(pattern),
+      json: matching(pattern),
     },
     parse,
     ({ value }) => {
@@ -260,7 +260,7 @@ export function rateOfChange(o: Told<string>): Kind<RateOfChange> {
       ...withDefault(o.default),
       allowed: "a number above zero, the channel's unit, a slash and a unit of time",
       example: o.default ?? "0.5 m/s",
-      json: text(PATTERNS.rateOfChange),
+      json: matching(PATTERNS.rateOfChange),
     },
     parseRateOfChange,
     (r) => ({ is: r }),
@@ -363,7 +363,11 @@ export function truth(o: Told<boolean>): Kind<boolean> {
     (value) => {
       if (typeof value === "boolean") return { is: value };
       const word = String(value).toLowerCase();
-      const meant = /^(yes|on|y|1|true)$/.test(word) ? "true" : /^(no|off|n|0|false)$/.test(word) ? "false" : "true or false";
+      const meant = /^(yes|on|y|1|true)$/.test(word)
+        ? "true"
+        : /^(no|off|n|0|false)$/.test(word)
+          ? "false"
+          : "true or false";
       return new Misfit("this is not true or false", {
         code: "wrong-type",
         given: shown(value),

@@ -1,215 +1,280 @@
 /**
- * Quantities as people write them: a number and a unit. Durations are held exactly, as rational
- * microseconds; failure is a value that says what was given, what is allowed and what to do.
+ * Quantities as the pipeline file writes them: a number, a blank and an SI unit. Exact where it matters.
+ * A text that cannot be used gives `{ error }`; nothing here throws.
  */
 import { quoted } from "../diagnostics.ts";
+import {
+  type BigRational,
+  DECIMAL,
+  lowestTerms,
+  nearestNumber,
+  type Rational,
+  readDecimal,
+  times,
+  toRational,
+} from "./rational.ts";
 
-/** In lowest terms, den > 0. */
-export interface Rational {
-  readonly num: number;
-  readonly den: number;
-}
+export { type Instant, parseInstant } from "./instant.ts";
+export { describeFrequency, formatDuration, formatFrequency } from "./quantity-text.ts";
+export type { Rational } from "./rational.ts";
 
-export interface QuantityError {
+/** Why a text is no such quantity, in the words of a diagnostic. */
+export interface Refused {
   readonly error: { readonly given: string; readonly allowed: string; readonly todo: string };
 }
 
+/** A length of time, 0 or more. */
 export interface Duration {
   /** Exact microseconds. */
   readonly us: Rational;
   readonly seconds: number;
+  /** As it stood in the file, for echoes. */
   readonly text: string;
 }
 
+/** A frequency, 0 or more: in Hz (given as such or as a period), or against a stage's own sampling rate. */
 export type Frequency =
-  | { readonly kind: "hertz"; readonly hz: number; readonly text: string }
+  | { readonly kind: "hertz"; readonly hz: number; readonly exact?: Rational; readonly text: string }
   | { readonly kind: "cycles-per-sample"; readonly value: number; readonly text: string };
 
+/** A sampling rate, by its exact interval. */
 export interface Rate {
   readonly interval_us: Rational;
   readonly hz: number;
   readonly text: string;
 }
 
-export interface Instant {
-  /** Integer microseconds since 1970-01-01T00:00:00Z. */
-  readonly us: number;
+/** A number in the unit that the parser's name says. */
+export interface Level {
+  readonly value: number;
   readonly text: string;
 }
 
-const NUMBER = "[+-]?(?:\\d+(?:\\.\\d*)?|\\.\\d+)(?:[eE][+-]?\\d+)?";
-/** A number, or a ratio of whole numbers such as 1/360. */
-const AMOUNT = `(?:${NUMBER}|\\d+/\\d+)`;
-
-/** Exact microseconds in each unit, as big integers over a power of ten. */
-const TIME_US: Record<string, bigint> = {
-  us: 1n,
-  µs: 1n,
-  μs: 1n,
-  ms: 1_000n,
-  s: 1_000_000n,
-  min: 60_000_000n,
-  h: 3_600_000_000n,
-  d: 86_400_000_000n,
-  wk: 604_800_000_000n,
-};
-const FREQUENCY_HZ: Record<string, readonly [bigint, bigint]> = {
-  uHz: [1n, 1_000_000n],
-  µHz: [1n, 1_000_000n],
-  μHz: [1n, 1_000_000n],
-  mHz: [1n, 1_000n],
-  Hz: [1n, 1n],
-  kHz: [1_000n, 1n],
-  MHz: [1_000_000n, 1n],
-};
-
-const units = (table: Record<string, unknown>) => Object.keys(table).join("|");
-export const DURATION_PATTERN = `^\\s*${AMOUNT}\\s*(?:${units(TIME_US)})\\s*$`;
-export const FREQUENCY_PATTERN = `^\\s*${AMOUNT}\\s*(?:${units(FREQUENCY_HZ)}|cycles/sample|${units(TIME_US)})\\s*$`;
-export const RATE_PATTERN = `^\\s*${AMOUNT}\\s*(?:${units(FREQUENCY_HZ)})\\s*$`;
-export const DECIBEL_PATTERN = `^\\s*${NUMBER}\\s*dB\\s*$`;
-export const PERCENT_PATTERN = `^\\s*${NUMBER}\\s*%\\s*$`;
-export const INSTANT_PATTERN =
-  "^\\d{4}-\\d{2}-\\d{2}(?:[T ]\\d{2}:\\d{2}(?::\\d{2}(?:\\.\\d{1,6})?)?(?:Z|[+-]\\d{2}:\\d{2}))?$";
-
-interface Amount {
-  readonly num: bigint;
-  readonly den: bigint;
+export interface RateOfChange {
+  /** As written: 0.5 in `0.5 m/s`. */
+  readonly value: number;
+  /** As written: `m/s`. */
   readonly unit: string;
+  /** Unit of the changing quantity: `m`. */
+  readonly channelUnit: string;
+  /** Value in channel units per second. */
+  readonly perSecond: number;
+  readonly text: string;
 }
 
-/** Reads amount and unit exactly; undefined when the text is not one. */
-function amountOf(text: string): Amount | undefined {
-  const found = new RegExp(`^\\s*(?:(${NUMBER})|(\\d+)/(\\d+))\\s*([^\\s\\d].*?)?\\s*$`, "u").exec(text);
-  if (found === null) return undefined;
-  const unit = found[4] ?? "";
-  if (found[1] === undefined) {
-    const den = BigInt(found[3]!);
-    return den === 0n ? undefined : { num: BigInt(found[2]!), den, unit };
-  }
-  const [, sign, whole, fraction, exponent] = /^([+-]?)(\d*)\.?(\d*)(?:[eE]([+-]?\d+))?$/.exec(found[1])!;
-  const power = Number(exponent ?? 0) - fraction!.length;
-  if (Math.abs(power) > 40) return undefined;
-  const digits = BigInt(`${whole}${fraction}` || "0") * (sign === "-" ? -1n : 1n);
-  return power >= 0
-    ? { num: digits * 10n ** BigInt(power), den: 1n, unit }
-    : { num: digits, den: 10n ** BigInt(-power), unit };
+type Units = Readonly<Record<string, BigRational>>;
+const whole = (n: number): BigRational => ({ num: BigInt(n), den: 1n });
+const part = (n: number): BigRational => ({ num: 1n, den: BigInt(n) });
+
+/** Microseconds in each unit of time. */
+const TIME: Units = {
+  us: whole(1),
+  µs: whole(1),
+  ms: whole(1e3),
+  s: whole(1e6),
+  min: whole(60e6),
+  h: whole(3600e6),
+  d: whole(86_400e6),
+  wk: whole(604_800e6),
+};
+const HERTZ: Units = { uHz: part(1e6), µHz: part(1e6), mHz: part(1e3), Hz: whole(1), kHz: whole(1e3) };
+const PER_SAMPLE: Units = { "cycles/sample": whole(1) };
+const DECIBELS: Units = { dB: whole(1) };
+const PERCENT: Units = { "%": part(100) };
+const PPM: Units = { ppm: whole(1) };
+
+/** Spellings that are not taken but whose meaning is plain. */
+const MEANT: Readonly<Record<string, string>> = {
+  sec: "s",
+  secs: "s",
+  second: "s",
+  seconds: "s",
+  m: "min",
+  mins: "min",
+  minute: "min",
+  minutes: "min",
+  hr: "h",
+  hrs: "h",
+  hour: "h",
+  hours: "h",
+  day: "d",
+  days: "d",
+  w: "wk",
+  week: "wk",
+  weeks: "wk",
+  msec: "ms",
+  usec: "us",
+  hertz: "Hz",
+  "cycle/sample": "cycles/sample",
+  decibel: "dB",
+  decibels: "dB",
+  percent: "%",
+  "1/s": "Hz",
+};
+
+const TIME_WORDS = "a number and one of us, ms, s, min, h, d, wk";
+const HERTZ_WORDS = "a number and one of uHz, mHz, Hz, kHz";
+const FREQUENCY_WORDS = `${HERTZ_WORDS}, cycles/sample, or a period such as 10 min`;
+
+/** JSON Schema patterns of the texts that the parsers take. */
+export const PATTERNS = {
+  duration: pattern([TIME], ""),
+  frequency: pattern([HERTZ, PER_SAMPLE, TIME], ""),
+  frequencyInHertz: pattern([HERTZ, TIME], ""),
+  rate: pattern([HERTZ], ""),
+  durationOrRate: pattern([TIME, HERTZ], ""),
+  decibels: pattern([DECIBELS], "[+-]?"),
+  percent: pattern([PERCENT], ""),
+  ppm: pattern([PPM], "[+-]?"),
+  rateOfChange: String.raw`^\s*${DECIMAL}\s*\S+/(?:${Object.keys(TIME).join("|")}|μs)\s*$`,
+} as const;
+
+function pattern(tables: readonly Units[], sign: string): string {
+  const units = tables.flatMap((table) => Object.keys(table));
+  // The micro sign and the Greek letter look alike; both are taken.
+  const greek = units.filter((u) => u.startsWith("\u00b5")).map((u) => `\u03bc${u.slice(1)}`);
+  return String.raw`^\s*${sign}(?:${DECIMAL}|\d+\s*/\s*\d+)\s*(?:${[...units, ...greek].join("|")})\s*$`;
 }
 
-function lowest(num: bigint, den: bigint): Rational | undefined {
-  let a = num < 0n ? -num : num;
-  let b = den;
-  while (b > 0n) [a, b] = [b, a % b];
-  const n = num / a;
-  const d = den / a;
-  return n * d < 2n ** 52n ? { num: Number(n), den: Number(d) } : undefined;
+/** `10 ms`, `1 min`, `2.5 s`, `1/360 s`: 0 or more, held exactly in microseconds. */
+export function parseDuration(text: string): Duration | Refused {
+  const read = readQuantity(text, TIME, TIME_WORDS, "10 s");
+  if ("error" in read) return read;
+  const us = toRational(read.amount);
+  if (us === null)
+    return refused(text, "what microseconds hold exactly, up to about 200 years", "use fewer digits");
+  return { us, seconds: nearestNumber(times(read.amount, part(1e6))), text: read.text };
 }
 
-const failure = (text: string, allowed: string, todo: string): QuantityError => ({
-  error: { given: text === "" ? "nothing" : quoted(text), allowed, todo },
-});
-
-/** `10 ms`, `2.5 s`, `1/360 s`, `1 d`: more than zero, and exactly a rational number of microseconds. */
-export function parseDuration(text: string): Duration | QuantityError {
-  const allowed = "a length of time with its unit: us, ms, s, min, h, d, wk";
-  const amount = amountOf(text);
-  if (amount === undefined) return failure(text, allowed, "write for instance 10 s");
-  const unit = TIME_US[amount.unit];
-  if (unit === undefined)
-    return failure(
-      text,
-      allowed,
-      amount.unit === "" ? `add the unit, for instance ${text.trim()} s` : `${quoted(amount.unit)} is not a unit of time; write for instance 10 s`,
-    );
-  const num = amount.num * unit;
-  if (num < 0n) return failure(text, "a length of time that is not negative", "take the minus sign away");
-  if (num === 0n) return { us: { num: 0, den: 1 }, seconds: 0, text: text.trim() };
-  const us = lowest(num, amount.den);
-  if (us === undefined) return failure(text, "a length of time that can be held exactly", "use fewer digits");
-  return { us, seconds: us.num / us.den / 1e6, text: text.trim() };
+/** `0.5 Hz`, `2 mHz`, `1/3 Hz`, `0.1 cycles/sample`, or a period: `10 min`. 0 or more. */
+export function parseFrequency(text: string): Frequency | Refused {
+  const read = readQuantity(text, { ...HERTZ, ...PER_SAMPLE, ...TIME }, FREQUENCY_WORDS, "10 Hz");
+  if ("error" in read) return read;
+  if (read.unit in PER_SAMPLE)
+    return { kind: "cycles-per-sample", value: nearestNumber(read.amount), text: read.text };
+  if (read.unit in HERTZ) return hertz(read.amount, read.text);
+  if (read.amount.num === 0n) return refused(text, "a period above zero", "write 0 Hz for a constant");
+  return hertz(perSecond(read.amount), read.text);
 }
 
-/** `0.5 Hz`, `2 mHz`, `0.1 cycles/sample`, or a period such as `10 min`. */
-export function parseFrequency(text: string): Frequency | QuantityError {
-  const allowed = "a frequency (uHz, mHz, Hz, kHz, cycles/sample) or a period (us, ms, s, min, h, d)";
-  const amount = amountOf(text);
-  if (amount === undefined) return failure(text, allowed, "write for instance 0.5 Hz");
-  const value = ratio(amount.num, amount.den);
-  if (value < 0) return failure(text, "a frequency that is not negative", "take the minus sign away");
-  if (amount.unit === "cycles/sample") return { kind: "cycles-per-sample", value, text: text.trim() };
-  const hertz = FREQUENCY_HZ[amount.unit];
-  if (hertz !== undefined)
-    return { kind: "hertz", hz: ratio(amount.num * hertz[0], amount.den * hertz[1]), text: text.trim() };
-  const period = TIME_US[amount.unit];
-  if (period === undefined)
-    return failure(
-      text,
-      allowed,
-      amount.unit === "" ? `add the unit, for instance ${text.trim()} Hz` : `${quoted(amount.unit)} is not a unit of frequency; write for instance 0.5 Hz`,
-    );
-  if (amount.num === 0n) return failure(text, "a period above zero", "write the period, or 0 Hz");
-  return { kind: "hertz", hz: ratio(amount.den * 1_000_000n, amount.num * period), text: text.trim() };
+function hertz(amount: BigRational, text: string): Frequency {
+  const exact = toRational(amount);
+  return { kind: "hertz", hz: nearestNumber(amount), ...(exact === null ? {} : { exact }), text };
 }
 
-/** `100 Hz`: held as its exact interval. */
-export function parseRate(text: string): Rate | QuantityError {
-  const allowed = "a sampling rate: mHz, Hz, kHz";
-  const amount = amountOf(text);
-  const hertz = amount === undefined ? undefined : FREQUENCY_HZ[amount.unit];
-  if (amount === undefined || hertz === undefined)
-    return failure(text, allowed, amount?.unit === "" ? `add the unit, for instance ${text.trim()} Hz` : "write for instance 100 Hz");
-  if (amount.num <= 0n) return failure(text, "a sampling rate above zero", "write for instance 100 Hz");
-  const interval_us = lowest(amount.den * hertz[1] * 1_000_000n, amount.num * hertz[0]);
-  if (interval_us === undefined) return failure(text, "a rate that can be held exactly", "use fewer digits");
-  return { interval_us, hz: ratio(amount.num * hertz[0], amount.den * hertz[1]), text: text.trim() };
+/** Microseconds to hertz, and back. */
+const perSecond = ({ num, den }: BigRational): BigRational =>
+  lowestTerms({ num: den * 1_000_000n, den: num });
+
+/** `100 Hz`, `1/3 Hz`: a sampling rate, by its exact interval in microseconds. */
+export function parseRate(text: string): Rate | Refused {
+  const read = readQuantity(text, HERTZ, HERTZ_WORDS, "10 Hz");
+  if ("error" in read) return read;
+  if (read.amount.num === 0n) return refused(text, "a rate above zero", "write for instance 10 Hz");
+  const interval_us = toRational(perSecond(read.amount));
+  if (interval_us === null)
+    return refused(text, "a rate whose interval microseconds hold exactly", "use fewer digits");
+  return { interval_us, hz: nearestNumber(read.amount), text: read.text };
 }
 
 /** `-60 dB` as -60. */
-export function parseDecibels(text: string): number | QuantityError {
-  const amount = amountOf(text);
-  if (amount?.unit !== "dB")
-    return failure(text, "a number of decibels", amount?.unit === "" ? `add the unit: ${text.trim()} dB` : "write for instance 60 dB");
-  return ratio(amount.num, amount.den);
-}
-
+export const parseDecibels = (text: string): Level | Refused =>
+  parseLevel(text, DECIBELS, "a number and dB", "40 dB", true);
 /** `80 %` as 0.8. */
-export function parsePercent(text: string): number | QuantityError {
-  const amount = amountOf(text);
-  if (amount?.unit !== "%")
-    return failure(text, "a percentage", amount?.unit === "" ? `add the sign: ${text.trim()} %` : "write for instance 80 %");
-  return ratio(amount.num, amount.den * 100n);
+export const parsePercent = (text: string): Level | Refused =>
+  parseLevel(text, PERCENT, "a number and %", "80 %", false);
+/** `20 ppm` as 20. */
+export const parsePpm = (text: string): Level | Refused =>
+  parseLevel(text, PPM, "a number and ppm", "20 ppm", true);
+
+function parseLevel(
+  text: string,
+  units: Units,
+  allowed: string,
+  example: string,
+  signed: boolean,
+): Level | Refused {
+  const read = readQuantity(text, units, allowed, example, signed);
+  return "error" in read ? read : { value: nearestNumber(read.amount), text: read.text };
 }
 
-/** ISO 8601 with Z or an offset, to the microsecond; a date alone is its midnight in UTC. */
-export function parseInstant(text: string): Instant | QuantityError {
-  const todo = "write for instance 2031-03-04T00:00:00Z";
-  const allowed = "an ISO 8601 time with Z or an offset";
-  const found = new RegExp(INSTANT_PATTERN).exec(text.trim());
-  if (found === null) return failure(text, allowed, todo);
-  const [day, rest] = [text.trim().slice(0, 10), text.trim().slice(11)];
-  const clock = /^(\d{2}):(\d{2})(?::(\d{2})(?:\.(\d{1,6}))?)?(?:Z|([+-])(\d{2}):(\d{2}))$/.exec(rest);
-  const [y, m, d] = day.split("-").map(Number) as [number, number, number];
-  const midnight = Date.UTC(y, m - 1, d);
-  const date = new Date(midnight);
-  if (date.getUTCMonth() !== m - 1 || date.getUTCDate() !== d) return failure(text, "a day that the calendar has", todo);
-  if (rest === "") return { us: midnight * 1000, text: text.trim() };
-  if (clock === null) return failure(text, allowed, todo);
-  const [, hh, mm, ss = "0", fraction = "", sign, oh = "0", om = "0"] = clock;
-  if (Number(hh) > 23 || Number(mm) > 59 || Number(ss) > 59 || Number(oh) > 23 || Number(om) > 59)
-    return failure(text, "hours to 23, minutes and seconds to 59", todo);
-  const offset = (sign === "-" ? -1 : 1) * (Number(oh) * 60 + Number(om));
-  const us =
-    midnight * 1000 +
-    (Number(hh) * 3600 + (Number(mm) - offset) * 60 + Number(ss)) * 1e6 +
-    Number(fraction.padEnd(6, "0"));
-  return { us, text: text.trim() };
+/** `0.5 m/s`, `2 m3/s/min`: the unit of the channel, a slash, a unit of time. */
+export function parseRateOfChange(text: string): RateOfChange | Refused {
+  const match = new RegExp(String.raw`^(${DECIMAL})\s*(\S+)/(\S+)$`, "u").exec(text.trim());
+  const amount = match === null ? null : readDecimal(match[1]!);
+  const per = match === null ? undefined : unitIn(TIME, match[3]!);
+  if (match === null || amount === null || per === undefined || amount.num === 0n)
+    return refused(
+      text,
+      "a number above zero, the channel's unit, a slash and a unit of time",
+      "write for instance 0.5 m/s",
+    );
+  const [, , channelUnit = "", time = ""] = match;
+  return {
+    value: nearestNumber(amount),
+    unit: `${channelUnit}/${time}`,
+    channelUnit,
+    perSecond: nearestNumber({ num: amount.num * per.den * 1_000_000n, den: amount.den * per.num }),
+    text: text.trim(),
+  };
 }
 
-/** Nearest double to a ratio of big integers. */
-function ratio(num: bigint, den: bigint): number {
-  const small = (x: bigint) => x < 2n ** 53n && x > -(2n ** 53n);
-  if (small(num) && small(den)) return Number(num) / Number(den);
-  // 20 digits more than a double holds, then the platform's own rounding of decimal text.
-  const scaled = (num * 10n ** 40n) / den;
-  return Number(`${scaled}e-40`);
+interface Amount {
+  /** In the base unit of the table. */
+  readonly amount: BigRational;
+  readonly unit: string;
+  readonly text: string;
+}
+
+function unitIn(units: Units, unit: string): BigRational | undefined {
+  const unified = unit.replaceAll("\u03bc", "\u00b5");
+  return Object.hasOwn(units, unified) ? units[unified] : undefined;
+}
+
+const QUANTITY = new RegExp(
+  String.raw`^([+\-]?)(?:(\d{1,18})\s*/\s*(\d{1,18})(?![\d.])|(${DECIMAL}))\s*(.*)$`,
+  "su",
+);
+
+function readQuantity(
+  text: string,
+  units: Units,
+  allowed: string,
+  example: string,
+  signed = false,
+): Amount | Refused {
+  const clean = text.trim();
+  const match = QUANTITY.exec(clean);
+  if (match === null) return refused(text, allowed, `write for instance ${example}`);
+  const [, sign = "", over, under, decimal, unit = ""] = match;
+  const number = decimal ?? `${over}/${under}`;
+  const size = unitIn(units, unit);
+  if (size === undefined) return refused(text, allowed, unitAdvice(number, unit, units, example));
+  if (sign !== "" && !signed) return refused(text, `${allowed}, without a sign`, `write ${number} ${unit}`);
+  const value = decimal === undefined ? { num: BigInt(over!), den: BigInt(under!) } : readDecimal(decimal);
+  if (value === null) return refused(text, allowed, "use fewer digits");
+  if (value.den === 0n) return refused(text, allowed, "divide by something other than zero");
+  const amount = times(value, size);
+  return {
+    amount: sign === "-" ? { num: -amount.num, den: amount.den } : amount,
+    unit: unit.replaceAll("\u03bc", "\u00b5"),
+    text: clean,
+  };
+}
+
+function unitAdvice(number: string, unit: string, units: Units, example: string): string {
+  const comma = /^,(\d+)\s*(\S*)$/u.exec(unit);
+  if (comma !== null) return `write a point as decimal sign: ${number}.${comma[1]} ${comma[2]}`.trimEnd();
+  if (unit === "") return `add the unit, for instance ${number}${example.slice(example.indexOf(" "))}`;
+  const near =
+    MEANT[unit.toLowerCase()] ??
+    // Capitals matter in SI: MHz is not mHz, so that one is not guessed.
+    Object.keys(units).find((u) => u.toLowerCase() === unit.toLowerCase() && unit !== "MHz");
+  return near !== undefined && Object.hasOwn(units, near)
+    ? `write ${number} ${near}`
+    : `write for instance ${example}; capitals matter`;
+}
+
+function refused(text: string, allowed: string, todo: string): Refused {
+  return { error: { given: text.trim() === "" ? "an empty text" : quoted(text), allowed, todo } };
 }

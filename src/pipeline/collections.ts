@@ -1,0 +1,178 @@
+/** Kinds made of other kinds: lists, records, mappings with fixed keys, and a stage's settings. */
+import { z } from "zod";
+import {
+  factsOf,
+  type JsonSchema,
+  type Kind,
+  type KindFacts,
+  Misfit,
+  makeKind,
+  type PartIssues,
+  wrongType,
+} from "./kind.ts";
+import { name, nameMisfit } from "./texts.ts";
+
+/** JSON Schema of what may stand in the file; every kind brings its own. */
+export function jsonSchemaOf(schema: z.ZodType): JsonSchema {
+  const made = z.toJSONSchema(schema, {
+    io: "input",
+    unrepresentable: "any",
+    override: ({ zodSchema, jsonSchema }) => {
+      const facts = factsOf(zodSchema);
+      if (facts === undefined) return;
+      const { default: fallback } = jsonSchema;
+      for (const key of Object.keys(jsonSchema)) delete (jsonSchema as JsonSchema)[key];
+      Object.assign(
+        jsonSchema,
+        facts.json(),
+        { description: facts.about },
+        fallback === undefined ? {} : { default: fallback },
+      );
+    },
+  }) as JsonSchema;
+  return made;
+}
+
+/** The same without the dialect's address, for use inside another schema. */
+function innerJsonSchema(schema: z.ZodType): JsonSchema {
+  const { $schema: _, ...rest } = jsonSchemaOf(schema);
+  return rest;
+}
+
+interface ListTold {
+  readonly about: string;
+  readonly min?: number;
+  readonly max?: number;
+  /** A lone element may stand without its list. */
+  readonly single?: boolean;
+  readonly default?: readonly unknown[];
+}
+
+/** A list of one kind. */
+export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
+  const min = o.min ?? 0;
+  const inner = factsOf(element);
+  const size =
+    o.max === undefined
+      ? min === 0
+        ? ""
+        : `at least ${min}`
+      : min === o.max
+        ? `${min}`
+        : `${min} to ${o.max}`;
+  const what = inner?.allowed ?? "mappings";
+  const facts: KindFacts = {
+    kind: `list of ${inner?.kind ?? "mapping"}`,
+    about: o.about,
+    ...(inner?.unit === undefined ? {} : { unit: inner.unit }),
+    ...(o.default === undefined ? {} : { default: JSON.stringify(o.default) }),
+    allowed: `a list${size === "" ? "" : ` of ${size}`}${o.single === true ? " (one may stand alone)" : ""}, each: ${what}`,
+    example: `[${inner?.example ?? "{ … }"}]`,
+    element,
+    json: () => {
+      const items = innerJsonSchema(element);
+      const many = {
+        type: "array",
+        items,
+        ...(min > 0 ? { minItems: min } : {}),
+        ...(o.max === undefined ? {} : { maxItems: o.max }),
+      };
+      return o.single === true ? { anyOf: [items, many] } : many;
+    },
+  };
+  return makeKind<T[]>(
+    facts,
+    (value) => {
+      const given = Array.isArray(value) ? value : o.single === true ? [value] : null;
+      if (given === null) return wrongType(value, "a list", facts);
+      if (given.length < min || given.length > (o.max ?? Number.POSITIVE_INFINITY))
+        return new Misfit(`the list has too ${given.length < min ? "few" : "many"} entries`, {
+          code: "list-length",
+          given: `${given.length} ${given.length === 1 ? "entry" : "entries"}`,
+          allowed: size,
+          todo: given.length < min ? "add entries" : "take entries out",
+        });
+      const parts: PartIssues[] = [];
+      const is: T[] = [];
+      for (const [at, part] of given.entries()) {
+        // A hole in the list is an empty value, not a missing setting.
+        const parsed = element.safeParse(part ?? null);
+        if (parsed.success) is.push(parsed.data);
+        else parts.push({ at, issues: parsed.error.issues });
+      }
+      return parts.length > 0 ? parts : { is };
+    },
+    o.default,
+  );
+}
+
+/** A mapping of names of the user's choice to one kind. */
+export function record<T>(
+  element: z.ZodType<T>,
+  o: { readonly about: string; readonly min?: number },
+): Kind<Record<string, T>> {
+  const inner = factsOf(element);
+  const facts: KindFacts = {
+    kind: "mapping of names",
+    about: o.about,
+    allowed: `a mapping of names${inner === undefined ? "" : `, each: ${inner.allowed}`}`,
+    example: `{ first: ${inner?.example ?? "{ … }"} }`,
+    element,
+    json: () => ({
+      type: "object",
+      propertyNames: innerJsonSchema(name({ about: "A name." })),
+      additionalProperties: innerJsonSchema(element),
+      ...(o.min === undefined ? {} : { minProperties: o.min }),
+    }),
+  };
+  return makeKind<Record<string, T>>(facts, (value) => {
+    if (!isMapping(value)) return wrongType(value, "a mapping of names", facts);
+    const keys = Object.keys(value);
+    if (keys.length < (o.min ?? 0))
+      return new Misfit("the mapping has too few entries", {
+        code: "list-length",
+        given: `${keys.length} ${keys.length === 1 ? "entry" : "entries"}`,
+        allowed: `at least ${o.min}`,
+        todo: `add one, for instance ${facts.example}`,
+      });
+    const parts: PartIssues[] = [];
+    const is: Record<string, T> = {};
+    for (const key of keys) {
+      const bad = nameMisfit(key);
+      if (bad !== null) {
+        parts.push({
+          at: key,
+          issues: [{ code: "custom", path: [], message: bad.problem, params: { ...bad.facts, onKey: true } }],
+        });
+        continue;
+      }
+      const parsed = element.safeParse(value[key] ?? null);
+      if (parsed.success) is[key] = parsed.data;
+      else parts.push({ at: key, issues: parsed.error.issues });
+    }
+    return parts.length > 0 ? parts : { is };
+  });
+}
+
+/** A mapping with fixed keys; unknown keys are errors. */
+export function strictObject<S extends z.core.$ZodLooseShape>(shape: S, about?: string) {
+  const made = z.strictObject(shape);
+  return about === undefined ? made : made.meta({ description: about });
+}
+
+/** A stage's settings: its own kinds and the list of channels that it works on. */
+export function stageSettings<const S extends z.core.$ZodLooseShape>(stage: string, shape: S) {
+  return z
+    .strictObject({
+      ...shape,
+      channels: list(name({ about: "A channel." }), {
+        min: 1,
+        about: "Channels that the stage works on; all when left out.",
+      }).optional(),
+    })
+    .meta({ title: stage });
+}
+
+export function isMapping(value: unknown): value is Record<string, unknown> {
+  return value !== null && typeof value === "object" && !Array.isArray(value);
+}
