@@ -16,7 +16,7 @@ const LEVEL = {
   slosh: { frequency_Hz: 0.3, rms_m: 0.03, pole_radius: 0.98 },
   sensor_drift_mm_per_day: 5,
   noise_rms_m: 0.001,
-  step_m: 0.001,
+  quantisation_step_m: 0.001,
 };
 const INFLOW = { mean_m3s: 3.2, pumping: { period_s: 7200, amplitude_m3s: 0.9 }, noise_rms_m3s: 0.05 };
 
@@ -134,7 +134,7 @@ export function makeLevel() {
       seed: SEED,
       clock: { start: iso(START_ms), interval_s: INTERVAL_s, drift_ppm: DRIFT_ppm, jitter_sd_ms: JITTER_ms },
       level: { ...LEVEL, slosh: { ...LEVEL.slosh, rms_drawn_m: Number(rms(waves).toFixed(5)) } },
-      inflow: { ...INFLOW, step_m3s: 0.01 },
+      inflow: { ...INFLOW, quantisation_step_m3s: 0.01 },
       rows: {
         scheduled: ROWS,
         lost: lostRows,

@@ -16,7 +16,7 @@ const SIGNAL = {
   half_daily: { period_s: 43_200, amplitude_degC: 0.3 },
   heater: { period_s: 19 * 60, amplitude_degC: 0.1 },
   noise_rms_degC: 0.03,
-  step_degC: 0.01,
+  quantisation_step_degC: 0.01,
 };
 const LOST = [
   [12_950, 40],

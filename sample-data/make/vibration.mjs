@@ -16,7 +16,7 @@ const SIGNAL = {
   second_hum: { frequency_Hz: 100, amplitude_mm_s: 0.12 },
   valve: { at_s: 432.5, frequency_Hz: 3.2, amplitude_mm_s: 1.5, decay_s: 0.8 },
   noise_rms_mm_s: 0.08,
-  step_mm_s: 0.001,
+  quantisation_step_mm_s: 0.001,
 };
 const LOST = [
   [9_001, 1],
