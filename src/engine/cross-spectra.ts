@@ -1,9 +1,4 @@
-import type { NodeSpectra } from "./node-spectra.ts";
-
-interface Spectrum {
-  readonly re: Float64Array;
-  readonly im: Float64Array;
-}
+import type { NodeSpectra, SegmentSpectrum } from "./node-spectra.ts";
 
 /**
  * Sums of the segment spectra before (x), after (y) and removed (r = x - y) of one stage and channel, over
@@ -12,6 +7,8 @@ interface Spectrum {
  */
 export class CrossSpectra {
   segments = 0;
+  /** Sum over the segments of x's mean square, taken in time. */
+  squareIn = 0;
   readonly xx: Float64Array;
   readonly yy: Float64Array;
   readonly rr: Float64Array;
@@ -22,7 +19,7 @@ export class CrossSpectra {
   readonly xyIm: Float64Array;
   private readonly turnRe: Float64Array | null;
   private readonly turnIm: Float64Array | null;
-  private readonly waiting = new Map<number, Spectrum | null>();
+  private readonly waiting = new Map<number, SegmentSpectrum | null>();
 
   /**
    * @param fraction  the part of the stage's delay that is not a whole number of samples, 0 <= fraction < 1:
@@ -49,7 +46,7 @@ export class CrossSpectra {
     after.listen((m, spectrum) => this.pair(m, spectrum));
   }
 
-  private pair(m: number, y: Spectrum | null): void {
+  private pair(m: number, y: SegmentSpectrum | null): void {
     const x = this.waiting.get(m);
     for (const key of this.waiting.keys()) {
       if (key > m) break;
@@ -58,7 +55,7 @@ export class CrossSpectra {
     if (x !== undefined && x !== null && y !== null) this.add(x, y);
   }
 
-  private add(x: Spectrum, y: Spectrum): void {
+  private add(x: SegmentSpectrum, y: SegmentSpectrum): void {
     const { xx, yy, rr, yr, xyRe, xyIm, turnRe, turnIm } = this;
     for (let k = 0; k < xx.length; k++) {
       const a = x.re[k]!;
@@ -79,6 +76,7 @@ export class CrossSpectra {
       xyRe[k]! += a * c + b * d;
       xyIm[k]! += a * d - b * c;
     }
+    this.squareIn += x.meanSquare;
     this.segments++;
   }
 }

@@ -4,10 +4,14 @@ import type { SpectrumPlan } from "../signal/welch.ts";
 import type { IndexRange } from "./index-range.ts";
 
 /** One segment's transform, or null where the segment has an absent sample or lies outside the scope. */
-export type SegmentListener = (
-  segment: number,
-  spectrum: { re: Float64Array; im: Float64Array } | null,
-) => void;
+export type SegmentListener = (segment: number, spectrum: SegmentSpectrum | null) => void;
+
+export interface SegmentSpectrum {
+  readonly re: Float64Array;
+  readonly im: Float64Array;
+  /** Mean square of the segment, taken in time. */
+  readonly meanSquare: number;
+}
 
 /**
  * Cuts one node of a channel's chain into half-overlapping segments anchored to the absolute sample index
@@ -74,7 +78,7 @@ export class NodeSpectra {
     const at = start - this.buffer.base;
     const re = new Float64Array(bins);
     const im = new Float64Array(bins);
-    this.plan.spectrum(this.buffer.values.subarray(at, at + segment), re, im);
-    for (const listen of this.listeners) listen(this.next, { re, im });
+    const meanSquare = this.plan.spectrum(this.buffer.values.subarray(at, at + segment), re, im);
+    for (const listen of this.listeners) listen(this.next, { re, im, meanSquare });
   }
 }

@@ -18,6 +18,8 @@ const Z_95 = 1.959963984540054;
 export interface Densities {
   readonly plan: SpectrumPlan;
   readonly segments: number;
+  /** Mean square of the segments before the stage, taken in time. */
+  readonly meanSquareIn: number;
   readonly degreesOfFreedom: number;
   readonly xx: Float64Array;
   readonly yy: Float64Array;
@@ -36,6 +38,7 @@ export function densities(plan: SpectrumPlan, cross: CrossSpectra): Densities | 
   return {
     plan,
     segments: cross.segments,
+    meanSquareIn: cross.squareIn / cross.segments,
     degreesOfFreedom: equivalentDegreesOfFreedom(plan.windowCoefficients, plan.hop, cross.segments),
     xx: scaled(cross.xx),
     yy: scaled(cross.yy),
@@ -145,6 +148,7 @@ export function spectrumAccount(d: Densities, window: string): SpectrumAccount {
     degrees_of_freedom: d.degreesOfFreedom,
     interval_95: confidenceFactors(d.degreesOfFreedom, 0.95),
     integral_in: total,
+    mean_square_in: d.meanSquareIn,
     frequency_Hz: cells.map(([from, to]) => (plan.frequency(from) + plan.frequency(to - 1)) / 2),
     psd_in: mean(d.xx),
     psd_out: mean(d.yy),
