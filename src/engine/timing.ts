@@ -41,10 +41,19 @@ export function measureTiming(blocks: () => Iterable<RowBlock>): Timing | null {
     if (step > longest) longest = step;
   if (rows < 2) return null;
   const nominal_us = medianStep(blocks, rows - 1, longest);
+  // Stamps rounded to whole milliseconds make the median step a rounded one; their mean is not.
+  let short = 0;
+  let shortSum = 0;
+  for (const step of steps(blocks))
+    if (step <= GAP_INTERVALS * nominal_us) {
+      short++;
+      shortSum += step;
+    }
+  const pace_us = shortSum / short;
   const gaps: { from_us: number; to_us: number }[] = [];
   let gapCount = 0;
   let gapTotal_us = 0;
-  // Times are fitted as their departure from the nominal pace, so that long records cost no digits.
+  // Times are fitted as their departure from the mean pace, so that long records cost no digits.
   let n = 0;
   let count = 0;
   let meanN = 0;
@@ -58,7 +67,7 @@ export function measureTiming(blocks: () => Iterable<RowBlock>): Timing | null {
       const t = block.times[i]!;
       if (!Number.isNaN(previous)) {
         const step = t - previous;
-        n += Math.max(1, Math.round(step / nominal_us));
+        n += Math.max(1, Math.round(step / pace_us));
         if (step > GAP_INTERVALS * nominal_us) {
           gapCount++;
           gapTotal_us += step;
@@ -66,7 +75,7 @@ export function measureTiming(blocks: () => Iterable<RowBlock>): Timing | null {
         }
       }
       previous = t;
-      const d = t - first_us - n * nominal_us;
+      const d = t - first_us - n * pace_us;
       count++;
       const dn = n - meanN;
       const dd = d - meanD;
@@ -82,7 +91,7 @@ export function measureTiming(blocks: () => Iterable<RowBlock>): Timing | null {
     first_us,
     last_us,
     nominal_us,
-    fitted_us: slope === null ? null : nominal_us + slope,
+    fitted_us: slope === null ? null : pace_us + slope,
     jitterSd_us: slope === null ? null : Math.sqrt(Math.max(0, cdd - slope * cnd) / (count - 2)),
     gapCount,
     gapTotal_us,

@@ -1,9 +1,9 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { intervalSeconds, timeSince } from "../../src/signal/grid.ts";
-import { FILLED } from "../../src/signal/marks.ts";
 import { chainDelay } from "../../src/report/requirements.ts";
 import { densities } from "../../src/report/spectrum-account.ts";
+import { intervalSeconds, timeSince } from "../../src/signal/grid.ts";
+import { FILLED } from "../../src/signal/marks.ts";
 import { type Entry, evenRows, planOf, run } from "./harness.ts";
 
 const RESAMPLE: Entry = { stage: "resample", interval: "1 s" };
@@ -15,7 +15,12 @@ const CHAINS: Record<string, Entry[]> = {
   "even centred mean": [RESAMPLE, { stage: "moving-average", points: 30 }, REPORT],
   "trailing mean": [RESAMPLE, { stage: "moving-average", points: 31, reach: "past-only" }, REPORT],
   "even trailing mean": [RESAMPLE, { stage: "moving-average", points: 30, reach: "past-only" }, REPORT],
-  "mean, then every tenth": [RESAMPLE, { stage: "moving-average", points: 11 }, { stage: "decimate", by: 10 }, REPORT],
+  "mean, then every tenth": [
+    RESAMPLE,
+    { stage: "moving-average", points: 11 },
+    { stage: "decimate", by: 10 },
+    REPORT,
+  ],
   "trailing filter, every fourth, trend": [
     RESAMPLE,
     { stage: "fir", shape: "low-pass", pass: "0.05 Hz", stop: "0.15 Hz", reach: "past-only" },
@@ -97,7 +102,11 @@ describe("cut up", () => {
 
 describe("books", () => {
   it("kept + removed = input, sample by sample", () => {
-    for (const chain of [CHAINS["centred mean"]!, CHAINS["trailing mean"]!, CHAINS["trend over all, high-pass"]!]) {
+    for (const chain of [
+      CHAINS["centred mean"]!,
+      CHAINS["trailing mean"]!,
+      CHAINS["trend over all, high-pass"]!,
+    ]) {
       const plan = planOf(chain);
       const record = roughRecord(1500);
       const { clean, first, removed, removedFirst } = run(plan, record, { removed: true });
@@ -170,11 +179,15 @@ describe("provenance", () => {
 describe("trend", () => {
   it("with its residual gives the input back, and a constant leaves exactly nothing", () => {
     fc.assert(
-      fc.property(fc.integer({ min: 0, max: 5 }), fc.double({ min: -1e6, max: 1e6, noNaN: true }), (degree, c) => {
-        const plan = planOf([RESAMPLE, { stage: "detrend", degree, over: "50 s" }]);
-        const flat = run(plan, evenRows(new Float64Array(200).fill(c), 1_000_000));
-        for (const v of flat.clean[0]!) expect(v).toBe(0);
-      }),
+      fc.property(
+        fc.integer({ min: 0, max: 5 }),
+        fc.double({ min: -1e6, max: 1e6, noNaN: true }),
+        (degree, c) => {
+          const plan = planOf([RESAMPLE, { stage: "detrend", degree, over: "50 s" }]);
+          const flat = run(plan, evenRows(new Float64Array(200).fill(c), 1_000_000));
+          for (const v of flat.clean[0]!) expect(v).toBe(0);
+        },
+      ),
       { numRuns: 30 },
     );
   });

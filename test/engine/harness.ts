@@ -1,5 +1,5 @@
 /** Runs a chain over rows in memory, without files: for tests of the engine and of stages. */
-import { runChain, type ChannelResult, type RunOptions } from "../../src/engine/run-chain.ts";
+import { type ChannelResult, type RunOptions, runChain } from "../../src/engine/run-chain.ts";
 import { WHOLE_RECORD } from "../../src/engine/scope.ts";
 import { RowSpool } from "../../src/logs/row-spool.ts";
 import type { LoadedPipeline } from "../../src/pipeline/load.ts";
@@ -58,17 +58,23 @@ export function run(
     times: Float64Array.from(record.times),
     columns: record.columns.map((c) => Float64Array.from(c)),
   });
-  const gather = () => ({ first: Number.NaN, values: plan.channels.map(() => [] as number[]), marks: plan.channels.map(() => [] as number[]) });
+  const gather = () => ({
+    first: Number.NaN,
+    values: plan.channels.map(() => [] as number[]),
+    marks: plan.channels.map(() => [] as number[]),
+  });
   const clean = gather();
   const removed = gather();
-  const into = (to: ReturnType<typeof gather>): RunOptions["onClean"] => (first, count, values, marks) => {
-    if (Number.isNaN(to.first)) to.first = first;
-    for (let c = 0; c < values.length; c++)
-      for (let i = 0; i < count; i++) {
-        to.values[c]!.push(values[c]![i]!);
-        to.marks[c]!.push(marks[c]![i]!);
-      }
-  };
+  const into =
+    (to: ReturnType<typeof gather>): RunOptions["onClean"] =>
+    (first, count, values, marks) => {
+      if (Number.isNaN(to.first)) to.first = first;
+      for (let c = 0; c < values.length; c++)
+        for (let i = 0; i < count; i++) {
+          to.values[c]!.push(values[c]![i]!);
+          to.marks[c]!.push(marks[c]![i]!);
+        }
+    };
   const results = runChain({
     plan,
     rows: spool,
