@@ -1,5 +1,6 @@
 /** Kinds made of other kinds: lists, records, mappings with fixed keys, and a stage's settings. */
 import { z } from "zod";
+import { exampleOf, wordsOf } from "./describe-schema.ts";
 import {
   factsOf,
   type JsonSchema,
@@ -60,14 +61,13 @@ export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
       : min === o.max
         ? `${min}`
         : `${min} to ${o.max}`;
-  const what = inner?.allowed ?? "mappings";
   const facts: KindFacts = {
     kind: `list of ${inner?.kind ?? "mapping"}`,
     about: o.about,
     ...(inner?.unit === undefined ? {} : { unit: inner.unit }),
     ...(o.default === undefined ? {} : { default: JSON.stringify(o.default) }),
-    allowed: `a list${size === "" ? "" : ` of ${size}`}${o.single === true ? " (one may stand alone)" : ""}, each: ${what}`,
-    example: `[${inner?.example ?? "{ … }"}]`,
+    allowed: `a list${size === "" ? "" : ` of ${size}`}${o.single === true ? " (one may stand alone)" : ""}, each: ${wordsOf(element)}`,
+    example: `[${exampleOf(element)}]`,
     element,
     json: () => {
       const items = innerJsonSchema(element);
@@ -111,12 +111,11 @@ export function record<T>(
   element: z.ZodType<T>,
   o: { readonly about: string; readonly min?: number },
 ): Kind<Record<string, T>> {
-  const inner = factsOf(element);
   const facts: KindFacts = {
     kind: "mapping of names",
     about: o.about,
-    allowed: `a mapping of names${inner === undefined ? "" : `, each: ${inner.allowed}`}`,
-    example: `{ first: ${inner?.example ?? "{ … }"} }`,
+    allowed: `a mapping of names, each: ${wordsOf(element)}`,
+    example: `{ first: ${exampleOf(element)} }`,
     element,
     json: () => ({
       type: "object",

@@ -23,12 +23,12 @@ export function nameMisfit(text: string): Misfit | null {
 }
 
 /** A name that may become a file name or a column name. */
-export function name(o: { readonly about: string }): Kind<string> {
+export function name(o: { readonly about: string; readonly example?: string }): Kind<string> {
   const facts: KindFacts = {
     kind: "name",
     about: o.about,
     allowed: NAME_WORDS,
-    example: "level",
+    example: o.example ?? "level",
     json: () => ({
       type: "string",
       pattern: NAME_PATTERN,
@@ -46,9 +46,14 @@ interface TextTold {
   readonly about: string;
   readonly example: string;
   readonly longest?: number;
+  /** One line without control characters. */
+  readonly line?: boolean;
   /** Takes numbers too, as the text that they stand for. */
   readonly numbers?: boolean;
 }
+
+const ONE_LINE = String.raw`^(?=.*\S)\P{Cc}+$`;
+const NOT_BLANK = String.raw`\S`;
 
 /** Free text, not blank. */
 export function text(o: TextTold): Kind<string> {
@@ -56,24 +61,33 @@ export function text(o: TextTold): Kind<string> {
   const facts: KindFacts = {
     kind: "text",
     about: o.about,
-    allowed: `a text of 1 to ${longest} characters`,
+    allowed: `a text of 1 to ${longest} characters${o.line === true ? " on one line" : ""}`,
     example: o.example,
     json: () => ({
       type: o.numbers === true ? ["string", "number"] : "string",
-      pattern: String.raw`\S`,
+      pattern: o.line === true ? ONE_LINE : NOT_BLANK,
       maxLength: longest,
     }),
   };
   return makeKind<string>(facts, (value) => {
     if (typeof value === "number" && o.numbers === true) return { is: String(value) };
     if (typeof value !== "string") return notText(value, facts);
-    if (value.trim() !== "" && value.length <= longest) return { is: value };
-    return new Misfit(value.trim() === "" ? "the text is empty" : "the text is too long", {
-      code: "bad-text",
-      given: shown(value),
-      allowed: facts.allowed,
-      todo: value.trim() === "" ? `write for instance ${o.example}` : "shorten it",
-    });
+    const blank = value.trim() === "";
+    const broken = o.line === true && /\p{Cc}/u.test(value);
+    if (!blank && !broken && value.length <= longest) return { is: value };
+    return new Misfit(
+      blank
+        ? "the text is empty"
+        : broken
+          ? "the text has a line break or another control character"
+          : "the text is too long",
+      {
+        code: "bad-text",
+        given: shown(value),
+        allowed: facts.allowed,
+        todo: blank ? `write for instance ${o.example}` : broken ? "write it on one line" : "shorten it",
+      },
+    );
   });
 }
 
