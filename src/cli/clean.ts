@@ -3,7 +3,7 @@ import { resolve } from "node:path";
 import { type Diagnostic, DiagnosticError, quoted, renderDiagnostic } from "../diagnostics.ts";
 import { removedLag } from "../engine/run-chain.ts";
 import type { Scope } from "../engine/scope.ts";
-import { findSeries } from "../logs/find-series.ts";
+import { findSeries, settledOnly } from "../logs/find-series.ts";
 import { appendRun, type RunLine } from "../outputs/runs-ledger.ts";
 import { type LoadedPipeline, loadPipeline } from "../pipeline/load.ts";
 import { planPipeline } from "../pipeline/plan.ts";
@@ -82,7 +82,9 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
   let failed = 0;
   let wrongByDesign = 0;
   let unmet = 0;
-  for (const { logger, files } of series) {
+  for (const { logger, files: found } of series) {
+    const quiet_ms = (pipeline.logs.settled?.seconds ?? 0) * 1000;
+    const { settled: files, unsettled } = settledOnly(found, quiet_ms, Date.now());
     const folder = resolve(
       options.folder ?? resolve(loaded.folder, pipeline.writes.folder.replaceAll("{logger}", logger ?? "")),
     );
@@ -92,6 +94,15 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
     const title = logger === null ? pipeline.name : `${pipeline.name} ${logger}`;
     const fields = { pipeline: pipeline.name, series: logger };
     const started = new Date();
+    if (unsettled.length > 0) {
+      const names = unsettled.map((f) => f.name);
+      journal.info({ ...fields, left: names }, "files still changing are left for the next run");
+      if (options.quiet !== true)
+        streams.out(
+          `${title}: left for the next run, changed less than ${pipeline.logs.settled!.text} ago: ${names.join(", ")}\n`,
+        );
+      if (files.length === 0) continue;
+    }
     journal.info({ ...fields, files: files.length }, "cleaning");
     try {
       const outcome = await cleanSeries({

@@ -1,5 +1,6 @@
 /** The command line: reads the words, calls one command, returns its exit code. */
 import { Command, CommanderError } from "commander";
+import { STAGES } from "../stages/registry.ts";
 import { type CleanOptions, clean, type Streams } from "./clean.ts";
 import { DONE, WRONG } from "./exit-codes.ts";
 import { type RehearseOptions, rehearse } from "./rehearse.ts";
@@ -50,15 +51,15 @@ export async function main(words: readonly string[], streams: Streams): Promise<
     .argument("[name]", "one stage")
     .description("list the stages, or the settings of one")
     .action(async (name: string | undefined) => {
-      const { stagesCommand } = await import("./stages.ts");
-      code = stagesCommand(name, streams);
+      const { stagesText } = await import("./stages.ts");
+      streams.out(`${stagesText(STAGES, name)}\n`);
     });
   program
     .command("schema")
     .description("print the JSON Schema of the pipeline file")
     .action(async () => {
-      const { schemaCommand } = await import("./schema.ts");
-      code = schemaCommand(streams);
+      const { schemaText } = await import("./schema.ts");
+      streams.out(`${schemaText(STAGES)}\n`);
     });
   program.addHelpText(
     "after",

@@ -1,3 +1,4 @@
+import { statSync } from "node:fs";
 import { relative } from "node:path";
 import { findLogFiles } from "./find-files.ts";
 import type { LogFile } from "./rows.ts";
@@ -60,4 +61,19 @@ function loggerPattern(pattern: string): RegExp {
     return token.replace(/[.*+?^${}()|[\]\\]/g, "\\$&");
   });
   return new RegExp(`(?:^|/)${source}$`, "u");
+}
+
+/** Splits off the files that changed less than `quiet_ms` before `now_ms`: a logger may still be writing them. */
+export function settledOnly(
+  files: readonly LogFile[],
+  quiet_ms: number,
+  now_ms: number,
+): { settled: LogFile[]; unsettled: LogFile[] } {
+  const settled: LogFile[] = [];
+  const unsettled: LogFile[] = [];
+  for (const file of files) {
+    const changed = statSync(file.path, { throwIfNoEntry: false })?.mtimeMs;
+    (changed === undefined || now_ms - changed >= quiet_ms ? settled : unsettled).push(file);
+  }
+  return { settled, unsettled };
 }

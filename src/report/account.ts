@@ -151,19 +151,25 @@ function timingAccount(t: Timing, declared_s: number): TimingAccount {
   };
 }
 
+/** Figures of the whole chain; where stages work on some channels only, those of the channel with most. */
 function chainDesign(plan: Plan): Omit<ChainAccount, "channels" | "first" | "last"> {
   const all = [plan.gridStage, ...plan.stages];
-  const steps = all.map((s) => intervalSeconds(s.signalIn.grid ?? s.design.grid));
-  const sum = (f: (s: (typeof all)[number], step: number) => number) =>
-    all.reduce((total, s, i) => total + f(s, steps[i]!), 0);
+  const most = (figure: (s: (typeof all)[number], step: number) => number) =>
+    Math.max(
+      ...plan.channels.map((_, c) =>
+        all
+          .filter((s) => s.selected.includes(c))
+          .reduce((sum, s) => sum + figure(s, intervalSeconds(s.signalIn.grid ?? s.design.grid)), 0),
+      ),
+    );
   return {
     in_interval_s: intervalSeconds(plan.gridStage.design.grid),
     out_interval_s: intervalSeconds(plan.outGrid),
     delay_s: chainDelay(plan),
-    introduced_s: sum((s, step) => s.design.delay.samples * step),
-    compensated_s: sum((s) => s.design.delay.compensated_s),
-    look_ahead_s: all.some((s) => s.design.reach === null) ? null : sum((s, step) => lookAhead(s, step)),
-    end_s: sum((s) => s.design.end_s),
+    introduced_s: most((s, step) => s.design.delay.samples * step),
+    compensated_s: most((s) => s.design.delay.compensated_s),
+    look_ahead_s: all.some((s) => s.design.reach === null) ? null : most(lookAhead),
+    end_s: most((s) => s.design.end_s),
     rise_s: chainRise(plan),
   };
 }
