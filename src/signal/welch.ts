@@ -1,45 +1,60 @@
 /**
  * Power spectral density by Welch's method: overlapping windowed segments, each with its mean taken out,
  * their squared transforms averaged. One-sided, unit squared per Hz.
- * References: P. D. Welch (1967), IEEE Transactions on Audio and Electroacoustics 15, 70-73.
+ * References: P. D. Welch (1967), IEEE Transactions on Audio and Electroacoustics 15, 70-73; F. J. Harris
+ * (1978), Proceedings of the IEEE 66, 51-83, eq. 11 (equivalent noise bandwidth).
  */
 import { RealTransform } from "./real-transform.ts";
 import { type WindowKind, windowCoefficients } from "./windows.ts";
 
+export { confidenceFactors, equivalentDegreesOfFreedom } from "./chi-square.ts";
+
 export interface SpectrumOptions {
-  /** Samples in a segment, at least 2. */
+  /** Samples in a segment, at least 2; a power of two is fastest. */
   readonly segment: number;
+  /** Taken in its periodic form. */
   readonly window: WindowKind;
+  /** Shape of the Kaiser window. */
   readonly beta?: number;
   readonly samplingRate_Hz: number;
-  /** Samples from one segment's start to the next; half a segment when left out. */
+  /** Samples from one segment's start to the next, at least 1; half a segment (rounded up) when left out. */
   readonly hop?: number;
-  /** Whether each segment's mean is taken out first; true when left out. */
-  readonly centre?: boolean;
+  /** What is taken out of each segment before it is windowed; its mean when left out. */
+  readonly takenOut?: "nothing" | "mean" | "line";
 }
 
-/** All that the transforms of one node have in common. */
+/** All that the transforms of one node have in common. Work space is kept from call to call. */
 export class SpectrumPlan {
   readonly segment: number;
   readonly hop: number;
+  /** Frequencies in a spectrum: floor(segment / 2) + 1. */
   readonly bins: number;
   readonly samplingRate_Hz: number;
-  /** Bin spacing. */
+  /** Bin spacing, samplingRate / segment. */
   readonly resolution_Hz: number;
-  /** Equivalent noise bandwidth of the window. */
+  /** Equivalent noise bandwidth of the window: rate * sum w^2 / (sum w)^2. */
   readonly enbw_Hz: number;
+  /** 1 / (rate * sum w^2): |X[k]|^2 times this, doubled but at zero and Nyquist, is the one-sided density. */
+  readonly densityScale: number;
   readonly windowCoefficients: Float64Array;
   private readonly energy: number;
-  private readonly centre: boolean;
+  private readonly takenOut: "nothing" | "mean" | "line";
   private readonly transform: RealTransform;
   private readonly work: Float64Array;
 
+  /** @throws RangeError when a length or the rate is out of its range */
   constructor(options: SpectrumOptions) {
     const { segment, samplingRate_Hz } = options;
+    if (!(Number.isInteger(segment) && segment >= 2))
+      throw new RangeError(`segment of ${segment} samples is not a whole number >= 2`);
+    if (!(samplingRate_Hz > 0 && samplingRate_Hz < Number.POSITIVE_INFINITY))
+      throw new RangeError(`sampling rate ${samplingRate_Hz} Hz is not > 0`);
     this.segment = segment;
     this.samplingRate_Hz = samplingRate_Hz;
-    this.hop = options.hop ?? Math.max(1, Math.floor(segment / 2));
-    this.centre = options.centre ?? true;
+    this.hop = options.hop ?? Math.ceil(segment / 2);
+    if (!(Number.isInteger(this.hop) && this.hop >= 1))
+      throw new RangeError(`hop of ${this.hop} samples is not a whole number >= 1`);
+    this.takenOut = options.takenOut ?? "mean";
     this.transform = new RealTransform(segment);
     this.bins = this.transform.bins;
     this.resolution_Hz = samplingRate_Hz / segment;
@@ -47,6 +62,7 @@ export class SpectrumPlan {
     const sum = this.windowCoefficients.reduce((s, w) => s + w, 0);
     this.energy = this.windowCoefficients.reduce((s, w) => s + w * w, 0);
     this.enbw_Hz = (samplingRate_Hz * this.energy) / (sum * sum);
+    this.densityScale = 1 / (samplingRate_Hz * this.energy);
     this.work = new Float64Array(segment);
   }
 
@@ -56,26 +72,54 @@ export class SpectrumPlan {
 
   /** Factor from |X[k]|^2 to the one-sided density: bins 0 and Nyquist stand for themselves, others for two. */
   densityAt(bin: number): number {
-    const alone = bin === 0 || 2 * bin === this.segment;
-    return (alone ? 1 : 2) / (this.samplingRate_Hz * this.energy);
+    return bin === 0 || 2 * bin === this.segment ? this.densityScale : 2 * this.densityScale;
   }
 
-  /** Transform of one segment; re and im receive `bins` values. */
-  spectrum(x: Float64Array, re: Float64Array, im: Float64Array): void {
-    const { segment, windowCoefficients: w, work } = this;
+  /**
+   * Transform of one segment.
+   * @param x       `segment` samples, all finite
+   * @param re, im  receive `bins` values each
+   * @returns the segment's mean square as the window weights it, sum (w x)^2 / sum w^2, taken in time: the
+   *          integral of the segment's density equals it (Parseval's theorem)
+   */
+  spectrum(x: Float64Array, re: Float64Array, im: Float64Array): number {
+    const { segment, windowCoefficients: w, work, takenOut } = this;
+    const centre = (segment - 1) / 2;
     let mean = 0;
-    if (this.centre) {
+    let slope = 0;
+    if (takenOut !== "nothing") {
       // About the first sample, so that a constant leaves exactly nothing.
-      for (let i = 0; i < segment; i++) mean += x[i]! - x[0]!;
-      mean = x[0]! + mean / segment;
+      const pivot = x[0]!;
+      for (let i = 0; i < segment; i++) {
+        mean += x[i]! - pivot;
+        slope += (i - centre) * (x[i]! - pivot);
+      }
+      mean = pivot + mean / segment;
+      slope = takenOut === "line" ? slope / ((segment * (segment * segment - 1)) / 12) : 0;
     }
-    for (let i = 0; i < segment; i++) work[i] = (x[i]! - mean) * w[i]!;
+    let square = 0;
+    for (let i = 0; i < segment; i++) {
+      const v = (x[i]! - mean - slope * (i - centre)) * w[i]!;
+      work[i] = v;
+      square += v * v;
+    }
     this.transform.transform(work, re, im);
+    return square / this.energy;
   }
 }
 
-/** PSD of a whole gap-free record; samples after the last whole segment are left out. */
-export function welch(x: Float64Array, options: SpectrumOptions): { psd: Float64Array; segments: number; plan: SpectrumPlan } {
+export interface DensityEstimate {
+  /** Bin k at plan.frequency(k), unit squared per Hz. */
+  readonly psd: Float64Array;
+  readonly segments: number;
+  readonly plan: SpectrumPlan;
+}
+
+/**
+ * PSD of a whole gap-free record, all samples finite. Samples after the last whole segment are left out; of a
+ * record shorter than a segment the density is zero and `segments` says 0.
+ */
+export function welch(x: Float64Array, options: SpectrumOptions): DensityEstimate {
   const plan = new SpectrumPlan(options);
   const psd = new Float64Array(plan.bins);
   const re = new Float64Array(plan.bins);
@@ -91,15 +135,28 @@ export function welch(x: Float64Array, options: SpectrumOptions): { psd: Float64
 
 /**
  * Integral of a one-sided density over [from, to], in unit squared. Bin k stands for the stretch of one bin
- * width around k * width, and the whole of its power lies inside 0 to half the rate: the two end bins stand
- * for half a width, with double weight. Bins at the band's limits count pro rata, so neighbouring bands add up.
+ * width around k * width, cut off at zero and at the Nyquist frequency; the power of a bin is density * width
+ * and lies evenly over its stretch, so the two end bins hold theirs on half a width. Bins at the band's limits
+ * count pro rata: adjacent bands add up to the whole within rounding, and the whole, sum of density * width,
+ * is the mean square of what was transformed.
+ * @param density  bins 0 … last
+ * @param width    bin spacing
+ * @param from, to from <= to; what lies outside 0 to `nyquist` holds nothing
+ * @param nyquist  half the sampling rate; the last bin's frequency when left out. With an odd segment that
+ *                 is half a width less than half the rate: give it then
  */
-export function bandPower(density: Float64Array, width: number, from: number, to: number): number {
+export function bandPower(
+  density: Float64Array,
+  width: number,
+  from: number,
+  to: number,
+  nyquist = (density.length - 1) * width,
+): number {
+  if (!(from <= to)) throw new RangeError(`band from ${from} to ${to} is turned round`);
   let sum = 0;
-  const last = density.length - 1;
-  for (let k = Math.max(0, Math.floor(from / width - 0.5)); k <= last; k++) {
+  for (let k = Math.max(0, Math.floor(from / width - 0.5)); k < density.length; k++) {
     const low = Math.max(0, (k - 0.5) * width);
-    const high = Math.min(last * width, (k + 0.5) * width);
+    const high = Math.min(nyquist, (k + 0.5) * width);
     if (low >= to) break;
     const inside = Math.min(high, to) - Math.max(low, from);
     if (inside > 0) sum += density[k]! * width * (inside / (high - low));
