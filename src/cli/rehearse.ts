@@ -62,17 +62,17 @@ function designText(name: string, about: string | undefined, design: Design): st
   const lines = [about === undefined ? name : wrap(`${name}: ${about}`, 80), ""];
   lines.push(
     table([
-      ["stage", "in", "out", "taps", "delay", "left", "uses ahead", "ends", "rise"],
+      ["stage", "in", "out", "taps", "delay", "left", "ahead", "ends", "rise"],
       ...design.stages.map((s) => [
         `${s.place} ${s.stage}`,
-        s.in.interval_s === null ? "rows" : timeText(s.in.interval_s),
-        timeText(s.out.interval_s),
+        s.in.interval_s === null ? "rows" : timeText(s.in.interval_s, 3),
+        timeText(s.out.interval_s, 3),
         s.taps === null ? "–" : String(s.taps),
-        timeText(s.delay.introduced_s),
-        timeText(s.delay.residual_s),
-        s.look_ahead_s === null ? "record" : timeText(s.look_ahead_s),
-        timeText(s.end_s),
-        s.rise_s === null ? "–" : timeText(s.rise_s),
+        timeText(s.delay.introduced_s, 3),
+        timeText(s.delay.residual_s, 3),
+        s.look_ahead_s === null ? "record" : timeText(s.look_ahead_s, 3),
+        timeText(s.end_s, 3),
+        s.rise_s === null ? "–" : timeText(s.rise_s, 3),
       ]),
     ]),
   );

@@ -45,7 +45,11 @@ export function seriesSummary(account: Account, title: string, folder: string): 
     "late",
     `${timeText(chain.delay_s)} (introduced ${timeText(chain.introduced_s)}, compensated ${timeText(
       chain.compensated_s,
-    )}); uses data up to ${chain.look_ahead_s === null ? "the whole record" : timeText(chain.look_ahead_s)} ahead`,
+    )}); ${
+      chain.look_ahead_s === null
+        ? "each value uses the whole record"
+        : `the value at t uses data up to t + ${timeText(chain.look_ahead_s)}`
+    }`,
   );
   say("verdict", account.verdict.met ? "all requirements and alias limits met" : "NOT MET");
   for (const remark of account.verdict.remarks) say("", remark);

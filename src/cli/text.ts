@@ -12,24 +12,26 @@ export function grouped(n: number): string {
   return String(n).replace(/\B(?=(\d{3})+(?!\d))/g, " ");
 }
 
-/** A length of time with the unit that reads best. */
-export function timeText(s: number | null): string {
+const TIME_UNITS = [
+  ["d", 86_400],
+  ["h", 3600],
+  ["min", 60],
+  ["s", 1],
+  ["ms", 1e-3],
+  ["µs", 1e-6],
+] as const;
+
+/** A length of time with the unit that reads best: a whole number of a larger unit, or at least 2 of it. */
+export function timeText(s: number | null, digits = 4): string {
   if (s === null) return "whole record";
   if (s === 0) return "0 s";
   const size = Math.abs(s);
-  const [unit, factor] =
-    size < 1e-3
-      ? (["µs", 1e-6] as const)
-      : size < 1
-        ? (["ms", 1e-3] as const)
-        : size < 120
-          ? (["s", 1] as const)
-          : size < 7200
-            ? (["min", 60] as const)
-            : size < 172_800
-              ? (["h", 3600] as const)
-              : (["d", 86_400] as const);
-  return `${figure(s / factor)} ${unit}`;
+  for (const [unit, factor] of TIME_UNITS) {
+    const n = size / factor;
+    if ((n >= 1 && Math.abs(n - Math.round(n)) < 1e-9) || n >= 2)
+      return `${figure(s / factor, digits)} ${unit}`;
+  }
+  return `${figure(s * 1e6, digits)} µs`;
 }
 
 /** A frequency with its period: `2 mHz (8.333 min)`. */
@@ -47,17 +49,20 @@ export function frequencyText(hz: number | null | undefined, withPeriod = true):
   return `${figure(hz / factor)} ${unit}${withPeriod ? ` (${timeText(1 / hz)})` : ""}`;
 }
 
-/** Breaks text at blanks so that no line is longer than `width`; later lines start with `indent`. */
+/** Breaks text at blanks so that no line is longer than `width`; leading blanks stay, later lines start with `indent`. */
 export function wrap(text: string, width: number, indent = ""): string {
+  const lead = /^ */.exec(text)![0];
   const lines: string[] = [];
-  let line = "";
-  for (const word of text.split(" ")) {
-    if (line !== "" && line.length + 1 + word.length > width) {
-      lines.push(line);
+  let line = lead;
+  let empty = true;
+  for (const word of text.slice(lead.length).split(" ")) {
+    if (!empty && line.length + 1 + word.length > width) {
+      lines.push(line.trimEnd());
       line = indent + word;
-    } else line = line === "" ? word : `${line} ${word}`;
+    } else line += empty ? word : ` ${word}`;
+    empty = false;
   }
-  lines.push(line);
+  lines.push(line.trimEnd());
   return lines.join("\n");
 }
 
