@@ -1,13 +1,23 @@
 /**
- * Least-squares polynomial of degree 0 to 5, in Legendre polynomials over the span of the abscissa, so that
- * the normal equations stay well-conditioned. Sums are kept to about twice the working precision.
- * References: P. J. Davis & P. Rabinowitz, Methods of Numerical Integration, 2.7 (Legendre recurrence);
- * T. J. Dekker (1971), Numerische Mathematik 18, 224-242 (error-free product); T. Ogita, S. M. Rump & S. Oishi
- * (2005), SIAM Journal on Scientific Computing 26, 1955-1988 (compensated dot product). Recalled from memory.
+ * Least-squares polynomial of degree 0 to 5 in one pass: normal equations in Legendre polynomials over the
+ * span of the abscissa, with basis, sums and solution in double-double, so that what the normal equations
+ * cost in digits is not missed.
+ * References: G. W. Stewart (1998), Matrix Algorithms 1, 2.3 (normal equations, LDL' factors); M. Abramowitz &
+ * I. A. Stegun (1964), Handbook of Mathematical Functions, 22.3.8 (Legendre polynomials). Recalled from memory.
  */
+import { DoubleDouble } from "./double-double.ts";
+
+export const HIGHEST_DEGREE = 5;
+
+/** Legendre P0 … P5 as polynomials in u^2, highest power first; the odd ones times u. Exact in doubles. */
+const LEGENDRE = [[1], [1], [1.5, -0.5], [2.5, -1.5], [4.375, -3.75, 0.375], [7.875, -8.75, 1.875]];
+/** A direction that the abscissae resolve by less than this share of the span (squared) counts as unresolved. */
+const LEAST_PIVOT = 1e-20;
 
 export interface SolvedPolynomial {
-  /** Value at t. */
+  /** Coefficients of P0 … Pn of u = (t - (from + to) / 2) / ((to - from) / 2). */
+  readonly legendre: Float64Array;
+  /** Value at t; where the points were all equal, exactly their value. */
   valueAt(t: number): number;
   /** Coefficients a0, a1, … in powers of (t - origin). */
   powers(origin: number): Float64Array;
@@ -15,175 +25,190 @@ export interface SolvedPolynomial {
 
 export class PolynomialFit {
   readonly degree: number;
-  count = 0;
   private readonly centre: number;
   private readonly half: number;
-  private readonly gram: DoubleSum[];
-  private readonly moments: DoubleSum[];
-  private readonly basis: Float64Array;
+  private readonly basis: DoubleDouble[];
+  /** Rows of the lower triangle, one after another. */
+  private readonly gram: DoubleDouble[];
+  private readonly moments: DoubleDouble[];
+  private readonly square = new DoubleDouble();
+  private readonly departure = new DoubleDouble();
+  private readonly distinct: number[] = [];
+  private points = 0;
   private pivot = 0;
+  private lowest = Number.POSITIVE_INFINITY;
+  private highest = Number.NEGATIVE_INFINITY;
 
-  /** @param from, to  span of the abscissa, from < to; mapped to [-1, 1] */
+  /**
+   * @param degree    0 to 5
+   * @param from, to  span of the abscissa, from <= to, finite. Points outside it are taken too, but the
+   *                  equations are well-conditioned only for points that lie in it and fill some of it
+   * @throws RangeError outside these ranges
+   */
   constructor(degree: number, from: number, to: number) {
+    if (!(Number.isInteger(degree) && degree >= 0 && degree <= HIGHEST_DEGREE))
+      throw new RangeError(`degree ${degree} is not a whole number from 0 to ${HIGHEST_DEGREE}`);
+    if (!(from <= to && Number.isFinite(to - from)))
+      throw new RangeError(`span from ${from} to ${to} is turned round or has no end`);
     this.degree = degree;
-    this.centre = (from + to) / 2;
-    this.half = (to - from) / 2;
+    this.centre = from + (to - from) / 2;
+    this.half = (to - from) / 2 || 1;
     const n = degree + 1;
-    this.gram = Array.from({ length: (n * (n + 1)) / 2 }, () => new DoubleSum());
-    this.moments = Array.from({ length: n }, () => new DoubleSum());
-    this.basis = new Float64Array(n);
+    const numbers = (count: number) => Array.from({ length: count }, () => new DoubleDouble());
+    this.basis = numbers(n);
+    this.gram = numbers((n * (n + 1)) / 2);
+    this.moments = numbers(n);
   }
 
-  /** Adds a point; both finite. */
+  /** Points added. */
+  get count(): number {
+    return this.points;
+  }
+
+  /** Adds a point, both finite, |y| < 1e290. The result depends on the order of the points, and on nothing else. */
   add(t: number, y: number): void {
     // About the first value: a large constant costs no digits, and a constant record leaves exactly nothing.
-    if (this.count === 0) this.pivot = y;
-    this.count++;
-    const { basis, degree } = this;
-    legendre((t - this.centre) / this.half, basis);
-    const d = y - this.pivot;
-    let at = 0;
-    for (let i = 0; i <= degree; i++) {
-      this.moments[i]!.addProduct(basis[i]!, d);
-      for (let j = 0; j <= i; j++) this.gram[at++]!.addProduct(basis[i]!, basis[j]!);
+    if (this.points === 0) this.pivot = y;
+    this.points++;
+    if (this.distinct.length <= this.degree && !this.distinct.includes(t)) this.distinct.push(t);
+    if (t < this.lowest) this.lowest = t;
+    if (t > this.highest) this.highest = t;
+    const { basis, gram, moments, degree, departure } = this;
+    this.evaluateBasis(t);
+    departure.setDifference(y, this.pivot);
+    // P0 is 1: its products need no multiplication.
+    moments[0]!.add(departure.hi, departure.lo);
+    gram[0]!.hi = this.points;
+    for (let i = 1, at = 1; i <= degree; i++) {
+      const b = basis[i]!;
+      moments[i]!.addProduct(b.hi, b.lo, departure.hi, departure.lo);
+      gram[at++]!.add(b.hi, b.lo);
+      for (let j = 1; j <= i; j++) {
+        const c = basis[j]!;
+        gram[at++]!.addProduct(b.hi, b.lo, c.hi, c.lo);
+      }
     }
   }
 
-  /** null with fewer distinct points than the degree needs. */
+  /**
+   * null with fewer distinct abscissae than degree + 1, or with such as lie too close together for the span
+   * to be told apart (for degree 5, all within about 1 % of it).
+   */
   solve(): SolvedPolynomial | null {
-    const { degree, half, centre, pivot } = this;
-    const n = degree + 1;
-    if (this.count < n) return null;
-    const l = Array.from({ length: n }, () => new Float64Array(n));
-    const g = (i: number, j: number) => this.gram[(i * (i + 1)) / 2 + j]!.total;
-    for (let i = 0; i < n; i++)
-      for (let j = 0; j <= i; j++) {
-        let sum = g(i, j);
-        for (let k = 0; k < j; k++) sum -= l[i]![k]! * l[j]![k]!;
-        if (i !== j) l[i]![j] = sum / l[j]![j]!;
-        else if (sum > 1e-13 * this.count) l[i]![i] = Math.sqrt(sum);
-        else return null;
-      }
-    const substitute = (right: Float64Array): Float64Array => {
-      const c = Float64Array.from(right);
-      for (let i = 0; i < n; i++) {
-        for (let k = 0; k < i; k++) c[i]! -= l[i]![k]! * c[k]!;
-        c[i]! /= l[i]![i]!;
-      }
-      for (let i = n - 1; i >= 0; i--) {
-        for (let k = i + 1; k < n; k++) c[i]! -= l[k]![i]! * c[k]!;
-        c[i]! /= l[i]![i]!;
-      }
-      return c;
-    };
-    const right = Float64Array.from(this.moments, (m) => m.total);
-    const c = substitute(right);
-    // One step of refinement, with the residual in doubled precision.
-    for (let round = 0; round < 2; round++) {
-      const rest = Float64Array.from({ length: n }, (_, i) => {
-        const sum = new DoubleSum();
-        sum.addProduct(right[i]!, 1);
-        sum.addProduct(this.moments[i]!.low, 1);
-        for (let j = 0; j < n; j++) {
-          const cell = this.gram[i >= j ? (i * (i + 1)) / 2 + j : (j * (j + 1)) / 2 + i]!;
-          sum.addProduct(-cell.total, c[j]!);
-          sum.addProduct(-cell.low, c[j]!);
-        }
-        return sum.total;
-      });
-      const change = substitute(rest);
-      for (let i = 0; i < n; i++) c[i]! += change[i]!;
-    }
-    const basis = new Float64Array(n);
+    if (this.distinct.length <= this.degree) return null;
+    const c = solveSymmetric(this.gram, this.moments, LEAST_PIVOT * this.points);
+    if (c === null) return null;
+    const { centre, half, pivot } = this;
+    // Evaluated about the middle of the points, where powers up to the fifth are well-conditioned.
+    const middle = this.lowest + (this.highest - this.lowest) / 2;
+    const reach = (this.highest - this.lowest) / 2 || 1;
+    const powersOfU = fromLegendre(c);
+    const local = Float64Array.from(shifted(powersOfU, centre, half, middle), (a, k) => {
+      for (let i = 0; i < k; i++) a.multiply(reach);
+      return a.hi;
+    });
     return {
+      legendre: Float64Array.from(c, (x, i) => (i === 0 ? x.add(pivot).hi : x.hi)),
       valueAt: (t) => {
-        legendre((t - centre) / half, basis);
+        const w = (t - middle) / reach;
         let sum = 0;
-        for (let i = degree; i >= 0; i--) sum += c[i]! * basis[i]!;
+        for (let k = local.length - 1; k >= 0; k--) sum = sum * w + local[k]!;
         return pivot + sum;
       },
-      powers: (origin) => powersAbout(c, centre, half, pivot, origin),
+      powers: (origin) =>
+        Float64Array.from(shifted(powersOfU, centre, half, origin), (a, k) =>
+          k === 0 ? a.add(pivot).hi : a.hi,
+        ),
     };
   }
-}
 
-/** P0 … Pn at u by the three-term recurrence (i + 1) P[i+1] = (2 i + 1) u P[i] - i P[i-1]. */
-function legendre(u: number, out: Float64Array): void {
-  out[0] = 1;
-  if (out.length > 1) out[1] = u;
-  for (let i = 1; i + 1 < out.length; i++) out[i + 1] = ((2 * i + 1) * u * out[i]! - i * out[i - 1]!) / (i + 1);
-}
-
-/** Powers of u = (t - centre) / half turned into powers of (t - origin), by Taylor shift. */
-function powersAbout(c: Float64Array, centre: number, half: number, pivot: number, origin: number): Float64Array {
-  const n = c.length;
-  // Coefficients of each Legendre polynomial in powers of u.
-  const rows: Float64Array[] = [Float64Array.of(1), Float64Array.of(0, 1)];
-  for (let i = 1; i + 1 < n; i++) {
-    const next = new Float64Array(i + 2);
-    rows[i]!.forEach((a, k) => {
-      next[k + 1]! += ((2 * i + 1) * a) / (i + 1);
-    });
-    rows[i - 1]!.forEach((a, k) => {
-      next[k]! -= (i * a) / (i + 1);
-    });
-    rows.push(next);
+  /** P1 … Pn at u = (t - centre) / half. */
+  private evaluateBasis(t: number): void {
+    const { basis, degree, square } = this;
+    if (degree === 0) return;
+    const u = basis[1]!.setDifference(t, this.centre).divide(this.half);
+    if (degree === 1) return;
+    square.set(u.hi, u.lo).multiply(u.hi, u.lo);
+    for (let i = 2; i <= degree; i++) {
+      const terms = LEGENDRE[i]!;
+      const p = basis[i]!.set(terms[0]!);
+      for (let k = 1; k < terms.length; k++) p.multiply(square.hi, square.lo).add(terms[k]!);
+      if (i % 2 === 1) p.multiply(u.hi, u.lo);
+    }
   }
-  const a = new Float64Array(n);
-  for (let i = 0; i < n; i++)
-    rows[i]!.forEach((w, k) => {
-      a[k]! += c[i]! * w;
+}
+
+/** Solves G c = r by G = L D L'; null when a pivot falls to `least` or below. */
+function solveSymmetric(
+  gram: readonly DoubleDouble[],
+  right: readonly DoubleDouble[],
+  least: number,
+): DoubleDouble[] | null {
+  const n = right.length;
+  // Below the diagonal: L; on it: D. `scaled` holds L times D of the row in hand.
+  const l = gram.map((g) => new DoubleDouble().set(g.hi, g.lo));
+  const at = (i: number, j: number) => l[(i * (i + 1)) / 2 + j]!;
+  for (let i = 0; i < n; i++) {
+    const scaled: DoubleDouble[] = [];
+    for (let j = 0; j < i; j++) {
+      const x = at(i, j);
+      for (let k = 0; k < j; k++) x.addProduct(-scaled[k]!.hi, -scaled[k]!.lo, at(j, k).hi, at(j, k).lo);
+      scaled.push(new DoubleDouble().set(x.hi, x.lo));
+      x.divide(at(j, j).hi, at(j, j).lo);
+    }
+    const d = at(i, i);
+    for (let k = 0; k < i; k++) d.addProduct(-scaled[k]!.hi, -scaled[k]!.lo, at(i, k).hi, at(i, k).lo);
+    if (!(d.hi > least)) return null;
+  }
+  const c = right.map((r) => new DoubleDouble().set(r.hi, r.lo));
+  const take = (x: DoubleDouble, factor: DoubleDouble, y: DoubleDouble) =>
+    x.addProduct(-factor.hi, -factor.lo, y.hi, y.lo);
+  for (let i = 0; i < n; i++) for (let k = 0; k < i; k++) take(c[i]!, at(i, k), c[k]!);
+  for (let i = 0; i < n; i++) c[i]!.divide(at(i, i).hi, at(i, i).lo);
+  for (let i = n - 1; i >= 0; i--) for (let k = i + 1; k < n; k++) take(c[i]!, at(k, i), c[k]!);
+  return c;
+}
+
+/** Coefficients in powers of u from those of the Legendre polynomials. */
+function fromLegendre(c: readonly DoubleDouble[]): DoubleDouble[] {
+  const a = c.map(() => new DoubleDouble());
+  c.forEach((x, i) => {
+    LEGENDRE[i]!.forEach((term, k) => {
+      a[i - 2 * k]!.addProduct(x.hi, x.lo, term, 0);
     });
-  // q(s) with s = t - origin: u = (s + origin - centre) / half.
-  const shift = (origin - centre) / half;
-  for (let i = 0; i < n; i++) for (let k = n - 2; k >= i; k--) a[k]! += shift * a[k + 1]!;
-  for (let k = 0; k < n; k++) a[k]! /= half ** k;
-  a[0]! += pivot;
+  });
   return a;
 }
 
-/** A sum of products in about twice the working precision. */
-class DoubleSum {
-  private sum = 0;
-  private lost = 0;
-
-  addProduct(a: number, b: number): void {
-    const p = a * b;
-    const ca = 134217729 * a;
-    const ah = ca - (ca - a);
-    const al = a - ah;
-    const cb = 134217729 * b;
-    const bh = cb - (cb - b);
-    const bl = b - bh;
-    const error = al * bl - (p - ah * bh - al * bh - ah * bl);
-    const next = this.sum + p;
-    const part = next - this.sum;
-    this.lost += this.sum - (next - part) + (p - part) + error;
-    this.sum = next;
-  }
-
-  /** Rounded to a double. */
-  get total(): number {
-    return this.sum + this.lost;
-  }
-
-  /** What `total` leaves out. */
-  get low(): number {
-    return this.sum - this.total + this.lost;
-  }
+/** Powers of u = (t - centre) / half turned into powers of (t - origin), by repeated synthetic division. */
+function shifted(a: readonly DoubleDouble[], centre: number, half: number, origin: number): DoubleDouble[] {
+  const out = a.map((x) => new DoubleDouble().set(x.hi, x.lo));
+  const shift = new DoubleDouble().setDifference(origin, centre).divide(half);
+  for (let i = 0; i < out.length; i++)
+    for (let k = out.length - 2; k >= i; k--)
+      out[k]!.addProduct(shift.hi, shift.lo, out[k + 1]!.hi, out[k + 1]!.lo);
+  for (let k = 1; k < out.length; k++) for (let i = 0; i < k; i++) out[k]!.divide(half);
+  return out;
 }
 
-/** Fit to whole arrays; NaN values are left out. null when there are too few points. */
-export function fitPolynomial(t: ArrayLike<number>, y: ArrayLike<number>, degree: number): SolvedPolynomial | null {
+/**
+ * Fit to whole arrays of equal length; points whose t or y is NaN are left out.
+ * @returns null when too few distinct abscissae are left
+ */
+export function fitPolynomial(
+  t: ArrayLike<number>,
+  y: ArrayLike<number>,
+  degree: number,
+): SolvedPolynomial | null {
   let from = Number.POSITIVE_INFINITY;
   let to = Number.NEGATIVE_INFINITY;
   for (let i = 0; i < t.length; i++)
-    if (!Number.isNaN(y[i]!)) {
-      from = Math.min(from, t[i]!);
-      to = Math.max(to, t[i]!);
+    if (!Number.isNaN(y[i]!) && !Number.isNaN(t[i]!)) {
+      if (t[i]! < from) from = t[i]!;
+      if (t[i]! > to) to = t[i]!;
     }
   if (!(from <= to)) return null;
-  const fit = new PolynomialFit(degree, from, to > from ? to : from + 1);
-  for (let i = 0; i < t.length; i++) if (!Number.isNaN(y[i]!)) fit.add(t[i]!, y[i]!);
+  const fit = new PolynomialFit(degree, from, to);
+  for (let i = 0; i < t.length; i++) if (!Number.isNaN(y[i]!) && !Number.isNaN(t[i]!)) fit.add(t[i]!, y[i]!);
   return fit.solve();
 }
