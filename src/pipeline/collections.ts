@@ -3,10 +3,10 @@ import { z } from "zod";
 import { exampleOf, wordsOf } from "./describe-schema.ts";
 import {
   factsOf,
+  type IssueFacts,
   type JsonSchema,
   type Kind,
   type KindFacts,
-  Misfit,
   makeKind,
   type PartIssues,
   wrongType,
@@ -53,16 +53,9 @@ interface ListTold {
 export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
   const min = o.min ?? 0;
   const inner = factsOf(element);
-  const size =
-    o.max === undefined
-      ? min === 0
-        ? ""
-        : `at least ${min}`
-      : min === o.max
-        ? `${min}`
-        : `${min} to ${o.max}`;
+  const size = sizeWords(min, o.max);
   const facts: KindFacts = {
-    kind: `list of ${inner?.kind ?? "mapping"}`,
+    kind: `list, each a ${inner?.kind ?? "mapping"}`,
     about: o.about,
     ...(inner?.unit === undefined ? {} : { unit: inner.unit }),
     ...(o.default === undefined ? {} : { default: JSON.stringify(o.default) }),
@@ -85,15 +78,10 @@ export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
     (value) => {
       const given = Array.isArray(value) ? value : o.single === true ? [value] : null;
       if (given === null) return wrongType(value, "a list", facts);
-      if (given.length < min || given.length > (o.max ?? Number.POSITIVE_INFINITY))
-        return new Misfit(`the list has too ${given.length < min ? "few" : "many"} entries`, {
-          code: "list-length",
-          given: `${given.length} ${given.length === 1 ? "entry" : "entries"}`,
-          allowed: size,
-          todo: given.length < min ? "add entries" : "take entries out",
-        });
       const parts: PartIssues[] = [];
       const is: T[] = [];
+      if (given.length < min || given.length > (o.max ?? Number.POSITIVE_INFINITY))
+        parts.push({ issues: [wrongLength("list", given.length, min, size)] });
       for (const [at, part] of given.entries()) {
         // A hole in the list is an empty value, not a missing setting.
         const parsed = element.safeParse(part ?? null);
@@ -104,6 +92,12 @@ export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
     },
     o.default,
   );
+}
+
+function sizeWords(min: number, max: number | undefined): string {
+  if (max === undefined) return min === 0 ? "" : `at least ${min}`;
+  if (min === max) return `${min}`;
+  return min === 0 ? `up to ${max}` : `${min} to ${max}`;
 }
 
 /** A mapping of names of the user's choice to one kind. */
@@ -127,29 +121,38 @@ export function record<T>(
   return makeKind<Record<string, T>>(facts, (value) => {
     if (!isMapping(value)) return wrongType(value, "a mapping of names", facts);
     const keys = Object.keys(value);
-    if (keys.length < (o.min ?? 0))
-      return new Misfit("the mapping has too few entries", {
-        code: "list-length",
-        given: `${keys.length} ${keys.length === 1 ? "entry" : "entries"}`,
-        allowed: `at least ${o.min}`,
-        todo: `add one, for instance ${facts.example}`,
-      });
     const parts: PartIssues[] = [];
     const is: Record<string, T> = {};
+    const min = o.min ?? 0;
+    if (keys.length < min)
+      parts.push({ issues: [wrongLength("mapping", keys.length, min, `at least ${min}`)] });
     for (const key of keys) {
       const bad = nameMisfit(key);
-      if (bad !== null) {
-        parts.push({
-          at: key,
-          issues: [{ code: "custom", path: [], message: bad.problem, params: { ...bad.facts, onKey: true } }],
-        });
-        continue;
-      }
+      if (bad !== null) parts.push({ at: key, issues: [custom(bad.problem, { ...bad.facts, onKey: true })] });
       const parsed = element.safeParse(value[key] ?? null);
-      if (parsed.success) is[key] = parsed.data;
+      // Defined, not assigned: a name such as __proto__ must stay a name.
+      if (parsed.success) Object.defineProperty(is, key, { ...OWN, value: parsed.data });
       else parts.push({ at: key, issues: parsed.error.issues });
     }
     return parts.length > 0 ? parts : { is };
+  });
+}
+
+const OWN = { enumerable: true, configurable: true, writable: true };
+
+const custom = (message: string, params: IssueFacts): z.core.$ZodIssue => ({
+  code: "custom",
+  path: [],
+  message,
+  params,
+});
+
+function wrongLength(what: string, given: number, min: number, allowed: string): z.core.$ZodIssue {
+  return custom(`the ${what} has too ${given < min ? "few" : "many"} entries`, {
+    code: "list-length",
+    given: `${given} ${given === 1 ? "entry" : "entries"}`,
+    allowed,
+    todo: given < min ? "add entries" : "take entries out",
   });
 }
 

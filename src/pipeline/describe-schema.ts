@@ -1,6 +1,6 @@
 /** What a schema takes, in words and by example; for diagnostics and documentation. */
 import { z } from "zod";
-import { factsOf } from "./kind.ts";
+import { factsOf, type KindFacts } from "./kind.ts";
 
 /** What may stand there, in words. */
 export function wordsOf(schema: z.ZodType | undefined): string {
@@ -31,7 +31,7 @@ export function exampleOf(schema: z.ZodType | undefined): string {
 }
 
 /** Whether a setting must be given. */
-export const isNeeded = (schema: z.ZodType): boolean => schema._zod.optin !== "optional";
+export const isNeeded = (schema: z.ZodType): boolean => schema._zod.optin === undefined;
 
 /** Through `optional` and defaults, as far as a kind's own facts. */
 export function unwrapped(schema: z.ZodType): z.ZodType {
@@ -51,3 +51,27 @@ export function stageNames(schema: z.ZodType | undefined): string[] {
 /** Keys of a mapping with fixed keys. */
 export const keysOf = (schema: z.ZodType | undefined): string[] =>
   schema instanceof z.ZodObject ? Object.keys(schema.shape) : [];
+
+export interface DescribedSetting {
+  /** As a person would say it: `bands.NAME.from`. */
+  readonly key: string;
+  readonly schema: z.ZodType;
+  /** undefined for a mapping with fixed keys, whose keys follow. */
+  readonly facts: KindFacts | undefined;
+  readonly about: string | undefined;
+}
+
+/** All settings of a mapping, those inside others after them. */
+export function settingsOf(mapping: z.ZodObject, prefix = ""): DescribedSetting[] {
+  return Object.entries(mapping.shape as Record<string, z.ZodType>).flatMap(([name, schema]) => {
+    const key = `${prefix}${name}`;
+    const facts = factsOf(schema);
+    const inner = facts === undefined ? unwrapped(schema) : facts.element && unwrapped(facts.element);
+    const about = facts?.about ?? inner?.meta()?.description;
+    const between = facts === undefined ? "." : facts.kind.startsWith("list") ? "[ ]." : ".NAME.";
+    return [
+      { key, schema, facts, about },
+      ...(inner instanceof z.ZodObject ? settingsOf(inner, `${key}${between}`) : []),
+    ];
+  });
+}

@@ -1,5 +1,6 @@
 /** A pipeline file as YAML: its data, and the place of every key and value. */
 import {
+  type Alias,
   type Document,
   isAlias,
   isCollection,
@@ -7,10 +8,13 @@ import {
   isNode,
   isScalar,
   isSeq,
+  Lexer,
   LineCounter,
   type Node,
   type Pair,
+  Parser,
   parseDocument,
+  visit,
   type YAMLError,
 } from "yaml";
 import { quoted } from "../diagnostics.ts";
@@ -46,6 +50,8 @@ export interface PipelineDocument {
   atKey(path: Path): Place;
 }
 
+/** Tokens open at one time; a pipeline file has about 20. */
+const MOST_OPEN = 100;
 /** Aliases repeat what stands once; more than this is an attack on memory, not a pipeline. */
 const MOST_ALIASES = 100;
 
@@ -63,6 +69,12 @@ export function readDocument(text: string): PipelineDocument {
     at: () => mistake.place,
     atKey: () => mistake.place,
   });
+  const deep = tooDeepAt(text);
+  if (deep !== null) {
+    for (let start = 0; start >= 0 && start <= deep; start = text.indexOf("\n", start) + 1 || -1)
+      lines.addNewLine(start);
+    return unusable(tooDeep(placeOf(deep)));
+  }
   let document: Document.Parsed;
   let data: unknown;
   try {
@@ -74,17 +86,18 @@ export function readDocument(text: string): PipelineDocument {
       uniqueKeys: true,
       stringKeys: true,
       prettyErrors: false,
-      logLevel: "silent",
+      logLevel: "error",
     });
+    const nameless = namelessAlias(document);
+    if (nameless !== null) return unusable(unknownAlias(nameless.source, placeOf(startOf(nameless))));
     data = document.errors.every(isDuplicateKey) ? document.toJS({ maxAliasCount: MOST_ALIASES }) : undefined;
   } catch (error) {
     if (error instanceof ReferenceError) return unusable(tooManyAliases(placeOf(0)));
-    if (error instanceof RangeError) return unusable(tooDeep(placeOf(0)));
     throw error;
   }
   const version = document.directives?.yaml;
   const mistakes = [
-    ...document.errors.map((e) => yamlMistake(e, placeOf(e.pos[0]), text)),
+    ...yamlMistakes(document, text, placeOf),
     ...document.warnings.map((w) => tagMistake(w, placeOf(w.pos[0]))),
     ...(version?.explicit === true && version.version !== "1.2" ? [otherVersion(version.version)] : []),
   ];
@@ -145,7 +158,10 @@ const YAML_WORDS: Partial<Record<YAMLError["code"], readonly [problem: string, t
   BAD_INDENT: ["the indentation does not fit", "align the keys of one mapping in one column"],
   TAB_AS_INDENT: ["a tab stands in the indentation", "indent with blanks"],
   MISSING_CHAR: ["a closing sign is missing", "close the quote or bracket"],
-  BLOCK_AS_IMPLICIT_KEY: ["a key stands where its value is not finished", "put the key on a line of its own"],
+  BLOCK_AS_IMPLICIT_KEY: [
+    "a second colon stands in one line",
+    "put the text into quotes, or the inner keys on lines of their own",
+  ],
   BLOCK_IN_FLOW: ["a block stands inside brackets", "write it inside brackets too, or without them"],
   MULTILINE_IMPLICIT_KEY: ["a key runs over more than one line", "add the colon that is missing"],
   KEY_OVER_1024_CHARS: ["a key is very long", "add the colon that is missing"],
@@ -172,20 +188,89 @@ function yamlMistake(error: YAMLError, place: Place, text: string): YamlMistake 
       allowed: "each key once",
       todo: "take one of them out, or join them",
     };
-  if (error.code === "BAD_ALIAS")
-    return {
-      code: "yaml-syntax",
-      place,
-      problem: "a text that begins with * repeats a named part, and this one names no part",
-      given: line,
-      allowed: "the name of a part marked with & above",
-      todo: "put the text into quotes",
-    };
   const [problem, todo] = YAML_WORDS[error.code] ?? [
     `this is not YAML: ${quoted(error.message.split("\n")[0] ?? "")}`,
     "put texts with special signs into quotes, and look at the line before too",
   ];
   return { code: "yaml-syntax", place, problem, given: line, allowed: "YAML 1.2", todo };
+}
+
+/** Offset where the file gets too deep for a pipeline; found without recursion, which would overflow. */
+function tooDeepAt(text: string): number | null {
+  const parser = new Parser();
+  for (const lexeme of new Lexer().lex(text)) {
+    // The tokens are of no interest here, only how many of them are open.
+    for (const _ of parser.next(lexeme));
+    if (parser.stack.length > MOST_OPEN) return parser.offset;
+  }
+  return null;
+}
+
+/** The mistakes up to the first that breaks the structure; what the reader says after that is of its making. */
+function yamlMistakes(
+  document: Document.Parsed,
+  text: string,
+  placeOf: (offset: number) => Place,
+): YamlMistake[] {
+  const broken = document.errors.findIndex((e) => e.code === "BAD_INDENT" || e.code === "MISSING_CHAR");
+  const mistakes = document.errors
+    .slice(0, broken < 0 ? undefined : broken + 1)
+    .map((e) => yamlMistake(e, placeOf(e.pos[0]), text));
+  const bracket = broken < 0 ? null : unclosedBracket(document, text);
+  if (bracket !== null) mistakes[broken] = { ...unclosed(text[bracket]!), place: placeOf(bracket) };
+  return mistakes;
+}
+
+/** Offset of the first bracket that is never closed. */
+function unclosedBracket(document: Document.Parsed, text: string): number | null {
+  let found: number | null = null;
+  visit(document, {
+    Collection: (_key, node) => {
+      if (node.flow !== true || !node.range || /[\]}]/.test(text[node.range[1] - 1] ?? "")) return undefined;
+      found = node.range[0];
+      return visit.BREAK;
+    },
+  });
+  return found;
+}
+
+function unclosed(bracket: string): Omit<YamlMistake, "place"> {
+  return {
+    code: "yaml-syntax",
+    problem: "this bracket is not closed",
+    given: bracket,
+    allowed: "YAML 1.2",
+    todo: `add ${bracket === "[" ? "]" : "}"} where it ends`,
+  };
+}
+
+/** The first alias that stands for no part above it. */
+function namelessAlias(document: Document.Parsed): Alias | null {
+  const names = new Set<string>();
+  let nameless: Alias | null = null;
+  visit(document, {
+    Node: (_key, node) => {
+      if (isAlias(node)) {
+        if (names.has(node.source)) return undefined;
+        nameless = node;
+        return visit.BREAK;
+      }
+      if (node.anchor !== undefined) names.add(node.anchor);
+      return undefined;
+    },
+  });
+  return nameless;
+}
+
+function unknownAlias(name: string, place: Place): YamlMistake {
+  return {
+    code: "yaml-syntax",
+    place,
+    problem: "a text that begins with * repeats a part marked with &, and no part above has this mark",
+    given: quoted(`*${name}`),
+    allowed: "YAML 1.2",
+    todo: "put the text into quotes",
+  };
 }
 
 function tagMistake(warning: YAMLError, place: Place): YamlMistake {

@@ -25,7 +25,7 @@ export function explain(issue: z.core.$ZodIssue, root: z.ZodType, data: unknown)
   const path = issue.path.map((step) => (typeof step === "number" ? step : String(step)));
   if (issue.code === "unrecognized_keys") return unknownKeys(issue.keys, path, root, data);
   if (issue.code === "custom" && issue.params !== undefined) {
-    const { code, given, allowed, todo, onKey } = issue.params as IssueFacts & { readonly onKey?: boolean };
+    const { code, given, allowed, todo, onKey } = issue.params as IssueFacts;
     if (code === "missing-key") return [missingKey(path, root, data)];
     const problem = `${label(path, data)}: ${issue.message}`;
     return [{ code, path, at: onKey === true ? "key" : "value", problem, given, allowed, todo }];
@@ -103,6 +103,7 @@ function wrongMapping(path: Path, root: z.ZodType, data: unknown): Mistake {
   const given = valueAt(data, path);
   if (given === undefined && path.length > 0) return missingKey(path, root, data);
   const schema = schemaAt(root, path, data);
+  const isStage = typeof given === "string" && stageNames(schema).includes(given);
   return {
     code: given === null ? "empty-value" : "wrong-type",
     path,
@@ -110,26 +111,24 @@ function wrongMapping(path: Path, root: z.ZodType, data: unknown): Mistake {
     problem: `${label(path, data)} must be a mapping of keys to values`,
     given: shown(given),
     allowed: wordsOf(schema),
-    todo: `write for instance ${exampleOf(schema)}`,
+    todo: isStage ? `write { stage: ${given} } with its settings` : `write for instance ${exampleOf(schema)}`,
   };
 }
 
-/** Where a path leads, for people: `logs.time.column`, `fir.pass`, `stage 3`. */
+/** Where a path leads, for people: `logs.time.column`, `fir.pass, entry 2`, `stage 3`. */
 export function label(path: Path, data: unknown): string {
   if (path.length === 0) return "the pipeline";
-  const [first, second, ...rest] = path;
-  if (first !== "chain" || typeof second !== "number") return dotted(path);
-  const stage = valueAt(data, ["chain", second, "stage"]);
-  const who = typeof stage === "string" ? quoted(stage) : `stage ${second + 1}`;
-  return rest.length === 0 ? who : `${who}.${dotted(rest)}`;
-}
-
-function dotted(path: Path): string {
-  return path
-    .map((step, i) =>
-      typeof step === "number" ? `, entry ${step + 1}` : `${i === 0 ? "" : "."}${quoted(step)}`,
-    )
-    .join("");
+  const inChain = path[0] === "chain" && typeof path[1] === "number";
+  const stage = inChain ? valueAt(data, [...path.slice(0, 2), "stage"]) : undefined;
+  let said = inChain ? (typeof stage === "string" ? quoted(stage) : `stage ${Number(path[1]) + 1}`) : "";
+  for (let i = inChain ? 2 : 0; i < path.length; i++) {
+    const step = path[i]!;
+    if (typeof step === "string")
+      said += `${said === "" ? "" : typeof path[i - 1] === "number" && i > 2 ? ", " : "."}${quoted(step)}`;
+    // A lone value that stands for a list of one has no number.
+    else if (Array.isArray(valueAt(data, path.slice(0, i)))) said += `, entry ${step + 1}`;
+  }
+  return said;
 }
 
 /** The schema that judges the value at a path. */

@@ -32,6 +32,8 @@ export interface IssueFacts {
   readonly given: string;
   readonly allowed: string;
   readonly todo: string;
+  /** The key is wrong, not its value. */
+  readonly onKey?: boolean;
 }
 
 /** A value that a kind does not take. */
@@ -58,7 +60,8 @@ export function factsOf(schema: z.core.$ZodType): KindFacts | undefined {
 
 /** Issues of the parts of a collection, with the place of each part. */
 export interface PartIssues {
-  readonly at: string | number;
+  /** undefined: the collection itself. */
+  readonly at?: string | number;
   readonly issues: readonly z.core.$ZodIssue[];
 }
 
@@ -79,7 +82,11 @@ export function makeKind<T>(facts: KindFacts, read: ReadValue<T>, fallback?: unk
     if ("is" in result) return result.is;
     for (const { at, issues } of result)
       for (const issue of issues)
-        ctx.issues.push({ ...issue, path: [at, ...issue.path], input: undefined } as z.core.$ZodRawIssue);
+        ctx.issues.push({
+          ...issue,
+          path: at === undefined ? issue.path : [at, ...issue.path],
+          input: undefined,
+        } as z.core.$ZodRawIssue);
     return z.NEVER;
   });
   FACTS.set(kind, facts);
@@ -102,7 +109,7 @@ function nothing(value: undefined | null, facts: KindFacts): Misfit {
         code: "empty-value",
         given: "nothing",
         allowed: facts.allowed,
-        todo: `write a value, for instance ${facts.example}, or take the key out`,
+        todo: `write a value, for instance ${facts.example}, or take it out`,
       });
 }
 
@@ -170,7 +177,9 @@ export function wrongType(value: unknown, wanted: string, facts: KindFacts): Mis
         ? "a list"
         : typeof value === "object"
           ? "a mapping"
-          : `a ${typeof value}`;
+          : typeof value === "string"
+            ? "a text"
+            : `a ${typeof value}`;
   return new Misfit(`${word} stands where ${wanted} is meant`, {
     code: "wrong-type",
     given: shown(value),

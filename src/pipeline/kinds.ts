@@ -12,4 +12,4 @@ export {
   rateOfChange,
 } from "./quantity-kinds.ts";
 export { name, text } from "./texts.ts";
-export { oneOf, truth } from "./word-kinds.ts";
+export { oneOf, sign, truth } from "./word-kinds.ts";

@@ -33,7 +33,7 @@ function level(
       unit,
       ...withDefault(o.default),
       allowed: `a number with ${unit}${bounds === "" ? "" : `; ${bounds}`}`,
-      example: o.default ?? show(o.max ?? o.min ?? 20 / scale),
+      example: o.example ?? o.default ?? show(o.min ?? o.max ?? 20 / scale),
       json: matching(pattern),
     },
     parse,
@@ -71,7 +71,7 @@ function number(
     about: o.about,
     ...withDefault(o.default),
     allowed: `a ${kind}${bounds === "" ? "" : ` ${bounds}`}`,
-    example: String(o.default ?? o.min ?? o.max ?? 1),
+    example: o.example ?? String(o.default ?? o.min ?? o.max ?? 1),
     json: () => ({
       ...json,
       ...(o.min === undefined ? {} : { minimum: o.min }),

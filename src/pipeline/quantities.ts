@@ -268,8 +268,8 @@ function unitAdvice(number: string, unit: string, units: Units, example: string)
   if (unit === "") return `add the unit, for instance ${number}${example.slice(example.indexOf(" "))}`;
   const near =
     MEANT[unit.toLowerCase()] ??
-    // Capitals matter in SI: MHz is not mHz, so that one is not guessed.
-    Object.keys(units).find((u) => u.toLowerCase() === unit.toLowerCase() && unit !== "MHz");
+    // Capitals matter in SI: a capital M may mean mega or milli, so that one is not guessed.
+    Object.keys(units).find((u) => u.toLowerCase() === unit.toLowerCase() && !/^MHz$/i.test(unit));
   return near !== undefined && Object.hasOwn(units, near)
     ? `write ${number} ${near}`
     : `write for instance ${example}; capitals matter`;

@@ -46,7 +46,7 @@ function durationFacts(o: DurationTold): KindFacts {
     unit: TIME_UNITS,
     ...withDefault(o.default),
     allowed: `a number with one of ${TIME_UNITS}; ${bounds}`,
-    example: o.default ?? o.min ?? "10 s",
+    example: o.example ?? o.default ?? o.min ?? (o.zero === true ? "0 s" : "10 s"),
     json: matching(PATTERNS.duration),
   };
 }
@@ -95,11 +95,11 @@ export function durationOrRate(o: Told<string>): Kind<Duration> {
       unit: `${TIME_UNITS}, or ${HERTZ_UNITS}`,
       ...withDefault(o.default),
       allowed: `an interval with one of ${TIME_UNITS}, or a rate with one of ${HERTZ_UNITS}; above zero`,
-      example: o.default ?? "1 min",
+      example: o.example ?? o.default ?? "1 min",
       json: matching(PATTERNS.durationOrRate),
     },
     (given): Duration | Refused => {
-      if (!/Hz\s*$/.test(given)) return parseDuration(given);
+      if (!/Hz\s*$/i.test(given)) return parseDuration(given);
       const rate = parseRate(given);
       return "error" in rate ? rate : { us: rate.interval_us, seconds: 1 / rate.hz, text: rate.text };
     },
@@ -127,7 +127,7 @@ export function frequency(o: FrequencyTold): Kind<Frequency> {
       allowed: `a number with one of ${HERTZ_UNITS}${perSample ? ", cycles/sample" : ""}, or a period such as 10 min; ${
         o.zero === true ? "0 Hz or more" : "above 0 Hz"
       }`,
-      example: o.default ?? "0.5 Hz",
+      example: o.example ?? o.default ?? (o.zero === true ? "0 Hz" : "0.5 Hz"),
       json: matching(perSample ? PATTERNS.frequency : PATTERNS.frequencyInHertz),
     },
     parseFrequency,
@@ -155,7 +155,7 @@ export function rate(o: Told<string>): Kind<Rate> {
       unit: HERTZ_UNITS,
       ...withDefault(o.default),
       allowed: `a number with one of ${HERTZ_UNITS}; above 0 Hz`,
-      example: o.default ?? "10 Hz",
+      example: o.example ?? o.default ?? "10 Hz",
       json: matching(PATTERNS.rate),
     },
     parseRate,
@@ -173,7 +173,7 @@ export function instant(o: Told<string>): Kind<Instant> {
       unit: "ISO 8601",
       ...withDefault(o.default),
       allowed: "a date, or a date and time with Z or an offset, in ISO 8601",
-      example: o.default ?? "2031-03-04T00:00:00Z",
+      example: o.example ?? o.default ?? "2031-03-04T00:00:00Z",
       json: matching(INSTANT_PATTERN),
     },
     parseInstant,
@@ -191,7 +191,7 @@ export function rateOfChange(o: Told<string>): Kind<RateOfChange> {
       unit: "the channel's unit per us, ms, s, min, h, d or wk",
       ...withDefault(o.default),
       allowed: "a number above zero, the channel's unit, a slash and a unit of time",
-      example: o.default ?? "0.5 m/s",
+      example: o.example ?? o.default ?? "0.5 m/s",
       json: matching(PATTERNS.rateOfChange),
     },
     parseRateOfChange,

@@ -11,6 +11,7 @@ import {
   name,
   oneOf,
   record,
+  sign,
   strictObject,
   text,
   truth,
@@ -26,9 +27,19 @@ export interface StageSchema {
 }
 export type StageSchemas = ReadonlyMap<string, StageSchema>;
 
+const SEPARATORS = new Map([
+  [",", ","],
+  [";", ";"],
+  ["|", "|"],
+  ["tab", "\t"],
+  ["\t", "\t"],
+  ["blank", " "],
+  [" ", " "],
+]);
+
 const layout = strictObject(
   {
-    separator: oneOf([",", ";", "\t", "|", " "], { about: "Sign between two cells." }).optional(),
+    separator: sign(SEPARATORS, { about: "Sign between two cells." }).optional(),
     "decimal-sign": oneOf([".", ","], { about: "Sign between whole part and fraction." }).optional(),
     encoding: oneOf(["utf-8", "utf-16", "latin-1"], { about: "How characters are stored." }).optional(),
     "names-line": count({ min: 1, max: 1_000_000, about: "Line that holds the column names." }).optional(),
@@ -100,14 +111,25 @@ const requirements = strictObject(
   {
     keep: list(
       strictObject(
-        { ...band, ripple: decibels({ min: 1e-6, max: 60, about: "Largest departure from gain 1." }) },
+        {
+          ...band,
+          ripple: decibels({
+            min: 1e-6,
+            max: 60,
+            example: "0.1 dB",
+            about: "Largest departure from gain 1.",
+          }),
+        },
         "A band that must be kept.",
       ),
       { max: 100, about: "Bands that must be kept." },
     ).optional(),
     remove: list(
       strictObject(
-        { ...band, attenuation: decibels({ min: 0.01, max: 300, about: "Least attenuation." }) },
+        {
+          ...band,
+          attenuation: decibels({ min: 0.01, max: 300, example: "40 dB", about: "Least attenuation." }),
+        },
         "A band that must be taken out.",
       ),
       { max: 100, about: "Bands that must be taken out." },

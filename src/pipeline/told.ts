@@ -4,6 +4,8 @@
 export interface Told<D> {
   readonly about: string;
   readonly default?: D;
+  /** A value as it would stand in the file, for diagnostics; the default when left out. */
+  readonly example?: string;
 }
 
 /** Both limits belong to the range. */

@@ -10,7 +10,7 @@ export function oneOf<const V extends string>(values: readonly V[], o: Told<NoIn
     about: o.about,
     ...withDefault(o.default),
     allowed: values.join(", "),
-    example: o.default ?? values[0]!,
+    example: o.example ?? o.default ?? values[0]!,
     json: () => ({ enum: [...values] }),
   };
   return makeKind<V>(
@@ -24,7 +24,33 @@ export function oneOf<const V extends string>(values: readonly V[], o: Told<NoIn
         code: "not-a-choice",
         given: shown(value),
         allowed: facts.allowed,
-        todo: `write ${near ?? "one of them"}`,
+        todo: `write ${near ?? (values.length === 1 ? values[0] : "one of them")}`,
+      });
+    },
+    o.default,
+  );
+}
+
+/** One of some signs, each with the words that may stand for it; gives the sign. */
+export function sign(words: ReadonlyMap<string, string>, o: Told<string>): Kind<string> {
+  const facts: KindFacts = {
+    kind: "sign",
+    about: o.about,
+    ...withDefault(o.default),
+    allowed: [...words.keys()].filter((word) => word.trim() !== "").join("  "),
+    example: o.example ?? o.default ?? [...words.keys()][0]!,
+    json: () => ({ enum: [...words.keys()] }),
+  };
+  return makeKind<string>(
+    facts,
+    (value) => {
+      const is = typeof value === "string" ? words.get(value) : undefined;
+      if (is !== undefined) return { is };
+      return new Misfit("this is not one of the signs", {
+        code: "not-a-choice",
+        given: shown(value),
+        allowed: facts.allowed,
+        todo: "write one of them, in quotes",
       });
     },
     o.default,
@@ -38,7 +64,7 @@ export function truth(o: Told<boolean>): Kind<boolean> {
     about: o.about,
     ...withDefault(o.default),
     allowed: "true, false",
-    example: String(o.default ?? true),
+    example: o.example ?? String(o.default ?? true),
     json: () => ({ type: "boolean" }),
   };
   return makeKind<boolean>(
@@ -55,7 +81,7 @@ export function truth(o: Told<boolean>): Kind<boolean> {
         code: "wrong-type",
         given: shown(value),
         allowed: facts.allowed,
-        todo: `write ${meant}`,
+        todo: `write ${meant}${value === meant ? " without quotes" : ""}`,
       });
     },
     o.default,
