@@ -4,8 +4,18 @@
  * A grid point lies between the last present row at or before it and the next one after it. When the two
  * are farther apart than `longestGap_us` nothing is put there. A point on which a row falls exactly, or
  * whose two rows are at most 1.5 grid intervals apart, is measured; any other bridged point is filled.
+ * With nearest-sample a row also serves the grid times up to half an interval away from it, whatever gap lies
+ * beyond, and those are measured. Where grid times are not whole microseconds, a row within half a microsecond
+ * is on the point: stamps are rounded to microseconds.
  */
-import { firstIndexAtOrAfter, type Grid, intervalSeconds, lastIndexAtOrBefore, timeSince } from "./grid.ts";
+import {
+  fallsOnMultiplesOf,
+  firstIndexAtOrAfter,
+  type Grid,
+  intervalSeconds,
+  lastIndexAtOrBefore,
+  timeSince,
+} from "./grid.ts";
 import type { Emit, GridBlock } from "./grid-block.ts";
 import { FILLED, MISSING } from "./marks.ts";
 
@@ -39,9 +49,11 @@ export function meanPowerGain(blend: number, f_Hz: number, rowInterval_s: number
 
 export class RowInterpolator {
   private readonly grid: Grid;
-  private readonly between: Between;
+  private readonly line: boolean;
   private readonly longestGap_us: number;
   private readonly neighbour_us: number;
+  /** How far from a row a grid time may be and still be served by it alone. */
+  private readonly near_us: number;
   private started = false;
   private next = 0;
   private previous_us = Number.NaN;
@@ -57,10 +69,13 @@ export class RowInterpolator {
   private count = 0;
 
   constructor(grid: Grid, between: Between, longestGap_us: number) {
+    const interval_us = intervalSeconds(grid) * 1e6;
     this.grid = grid;
-    this.between = between;
+    this.line = between === "straight-line";
     this.longestGap_us = longestGap_us;
-    this.neighbour_us = NEIGHBOUR_INTERVALS * intervalSeconds(grid) * 1e6;
+    this.neighbour_us = NEIGHBOUR_INTERVALS * interval_us;
+    const slack_us = fallsOnMultiplesOf(grid, 1) ? 0 : 0.5;
+    this.near_us = this.line ? slack_us : Math.max(slack_us, interval_us / 2);
   }
 
   push(times: Float64Array, column: Float64Array, count: number, emit: Emit): void {
@@ -69,18 +84,24 @@ export class RowInterpolator {
       const v = column[i]!;
       if (!this.started) {
         this.started = true;
-        this.next = firstIndexAtOrAfter(this.grid, t);
+        this.next = this.firstNear(t);
       }
       this.lastRow_us = t;
+      const gap = t - this.previous_us;
       if (Number.isNaN(v)) {
         // Once the gap is too long to bridge, what lies in it is known to be missing whatever comes.
-        if (!(t - this.previous_us <= this.longestGap_us))
-          this.blankTo(lastIndexAtOrBefore(this.grid, t), emit);
+        if (!(gap <= this.longestGap_us)) {
+          this.leave(emit);
+          this.blankTo(Math.min(lastIndexAtOrBefore(this.grid, t), this.firstNear(t) - 1), emit);
+        }
         continue;
       }
-      const gap = t - this.previous_us;
       if (gap <= this.longestGap_us) this.bridge(v, gap, emit);
-      else this.land(t, v, emit);
+      else {
+        this.leave(emit);
+        this.blankTo(this.firstNear(t) - 1, emit);
+        this.arrive(t, v, emit);
+      }
       this.previous_us = t;
       this.previous = v;
     }
@@ -88,7 +109,10 @@ export class RowInterpolator {
   }
 
   flush(emit: Emit): void {
-    if (this.started) this.blankTo(lastIndexAtOrBefore(this.grid, this.lastRow_us), emit);
+    if (this.started) {
+      this.leave(emit);
+      this.blankTo(this.lastNear(this.lastRow_us), emit);
+    }
     this.hand(emit);
   }
 
@@ -103,40 +127,66 @@ export class RowInterpolator {
     };
   }
 
-  /** The points after the previous row up to t, between two rows near enough to each other. */
+  /** First grid time that a row at t could serve alone, or that lies after it. */
+  private firstNear(t: number): number {
+    return firstIndexAtOrAfter(this.grid, t - this.near_us);
+  }
+
+  private lastNear(t: number): number {
+    return lastIndexAtOrBefore(this.grid, t + this.near_us);
+  }
+
+  /** The points after the previous row up to this one, between two rows near enough to each other. */
   private bridge(v: number, gap: number, emit: Emit): void {
+    const mark = gap > this.neighbour_us ? FILLED : 0;
     for (;;) {
       const since = timeSince(this.grid, this.next, this.previous_us);
-      if (since > gap) return;
-      if (since === gap) {
-        this.exact++;
-        this.put(v, 0, emit);
-        return;
-      }
-      const mark = gap > this.neighbour_us ? FILLED : 0;
-      if (this.between === "straight-line") {
+      const away = gap - since;
+      if (this.line) {
+        if (away < -this.near_us) return;
+        if (away <= this.near_us) {
+          this.exact++;
+          this.put(v, 0, emit);
+          return;
+        }
         const u = since / gap;
         this.blendSum += 2 * u * (1 - u);
         this.put(this.previous + (v - this.previous) * u, mark, emit);
       } else {
-        const late = since > gap - since;
-        const away = late ? gap - since : since;
-        this.displacedSum += away * away;
-        if (away > this.displacedMax) this.displacedMax = away;
-        this.put(late ? v : this.previous, mark, emit);
+        if (away < 0) return;
+        const late = since > away;
+        const distance = late ? away : since;
+        this.displaced(distance);
+        this.put(late ? v : this.previous, distance <= this.near_us ? 0 : mark, emit);
       }
     }
   }
 
-  /** The first present row after a gap that is too long: only a point exactly on it has a value. */
-  private land(t: number, v: number, emit: Emit): void {
-    const last = lastIndexAtOrBefore(this.grid, t);
-    const hit = last >= this.next && timeSince(this.grid, last, t) === 0;
-    this.blankTo(hit ? last - 1 : last, emit);
-    if (hit) {
-      this.exact++;
+  /** The points that the previous row serves alone, before a gap or the end. */
+  private leave(emit: Emit): void {
+    if (Number.isNaN(this.previous_us)) return;
+    for (;;) {
+      const since = timeSince(this.grid, this.next, this.previous_us);
+      if (since > this.near_us) return;
+      this.displaced(since);
+      this.put(this.previous, 0, emit);
+    }
+  }
+
+  /** The points at or before a row after a gap that it serves alone. */
+  private arrive(t: number, v: number, emit: Emit): void {
+    for (;;) {
+      const since = timeSince(this.grid, this.next, t);
+      if (since > (this.line ? this.near_us : 0)) return;
+      this.displaced(Math.abs(since));
       this.put(v, 0, emit);
     }
+  }
+
+  private displaced(distance: number): void {
+    if (distance === 0 || this.line) this.exact++;
+    this.displacedSum += distance * distance;
+    if (distance > this.displacedMax) this.displacedMax = distance;
   }
 
   private blankTo(last: number, emit: Emit): void {
