@@ -18,7 +18,7 @@ export function seriesSummary(account: Account, title: string, folder: string): 
         timing.gap_count === 0
           ? ", no gap"
           : `, ${grouped(timing.gap_count)} ${timing.gap_count === 1 ? "gap" : "gaps"}, ${timeText(timing.gap_total_s)} in all`
-      }${timing.drift_ppm === null ? "" : `, drift ${figure(timing.drift_ppm, 3)} ppm`}`,
+      }${timing.drift_ppm === null ? "" : `, drift ${figure(Math.round(timing.drift_ppm * 100) / 100, 3)} ppm`}`,
     );
   say(
     "clean",
@@ -29,7 +29,10 @@ export function seriesSummary(account: Account, title: string, folder: string): 
   for (const stage of account.stages)
     for (const [name, c] of Object.entries(stage.channels)) {
       if (!c.accounted || stage.stage === "report") continue;
-      const tones = c.tones.filter((t) => t.gain_dB < -3 || t.folds);
+      // A line that is next to nothing beside the signal is in the account, not here.
+      const tones = c.tones.filter(
+        (t) => (t.gain_dB < -3 || t.folds) && t.amplitude > 1e-4 * (c.rms_in ?? 0),
+      );
       say(
         "removed",
         `${stage.place} ${stage.stage}, ${name}: ${figure(c.variance_removed_pct)} % of the variance (rms ${figure(c.rms_removed)} ${c.unit})${

@@ -12,23 +12,24 @@ export function grouped(n: number): string {
   return String(n).replace(/\B(?=(\d{3})+(?!\d))/g, " ");
 }
 
+/** Unit, its length in seconds, and from how many of it on it reads better than the next smaller one. */
 const TIME_UNITS = [
-  ["d", 86_400],
-  ["h", 3600],
-  ["min", 60],
-  ["s", 1],
-  ["ms", 1e-3],
-  ["µs", 1e-6],
+  ["d", 86_400, 2],
+  ["h", 3600, 2],
+  ["min", 60, 2],
+  ["s", 1, 1],
+  ["ms", 1e-3, 1],
+  ["µs", 1e-6, 1],
 ] as const;
 
-/** A length of time with the unit that reads best: a whole number of a larger unit, or at least 2 of it. */
+/** A length of time with the unit that reads best: a whole number of a larger unit, or enough of it. */
 export function timeText(s: number | null, digits = 4): string {
   if (s === null) return "whole record";
   if (s === 0) return "0 s";
   const size = Math.abs(s);
-  for (const [unit, factor] of TIME_UNITS) {
+  for (const [unit, factor, enough] of TIME_UNITS) {
     const n = size / factor;
-    if ((n >= 1 && Math.abs(n - Math.round(n)) < 1e-9) || n >= 2)
+    if ((n >= 1 && Math.abs(n - Math.round(n)) < 1e-9) || n >= enough)
       return `${figure(s / factor, digits)} ${unit}`;
   }
   return `${figure(s * 1e6, digits)} µs`;
