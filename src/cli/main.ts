@@ -1,6 +1,5 @@
 /** The command line: reads the words, calls one command, returns its exit code. */
 import { Command, CommanderError } from "commander";
-import { STAGES } from "../stages/registry.ts";
 import { type CleanOptions, clean, type Streams } from "./clean.ts";
 import { DONE, WRONG } from "./exit-codes.ts";
 import { type RehearseOptions, rehearse } from "./rehearse.ts";
@@ -27,7 +26,7 @@ export async function main(words: readonly string[], streams: Streams): Promise<
   program
     .command("clean")
     .argument("<pipeline>", "pipeline file")
-    .description("clean the logs with the pipeline; deletes nothing, and never changes a log")
+    .description("deletes nothing and never changes a log; cleans the logs with the pipeline")
     .option("--logs <glob...>", "these logs instead of those named in the pipeline")
     .option("--folder <dir>", "write here instead of the folder named in the pipeline")
     .option("--from <time>", "write only from this time on (ISO 8601)")
@@ -51,15 +50,15 @@ export async function main(words: readonly string[], streams: Streams): Promise<
     .argument("[name]", "one stage")
     .description("list the stages, or the settings of one")
     .action(async (name: string | undefined) => {
-      const { stagesText } = await import("./stages.ts");
-      streams.out(`${stagesText(STAGES, name)}\n`);
+      const { stagesCommand } = await import("./stages.ts");
+      code = stagesCommand(name, streams);
     });
   program
     .command("schema")
     .description("print the JSON Schema of the pipeline file")
     .action(async () => {
-      const { schemaText } = await import("./schema.ts");
-      streams.out(`${schemaText(STAGES)}\n`);
+      const { schemaCommand } = await import("./schema.ts");
+      code = schemaCommand(streams);
     });
   program.addHelpText(
     "after",

@@ -16,6 +16,9 @@ export interface Planned {
 const isGridDesign = (design: StageDesign): design is GridDesign => "rowKernel" in design;
 const isReportDesign = (design: StageDesign): design is ReportDesign => "report" in design;
 
+/** Stages after which the rate is another. */
+const CHANGES_GRID = new Set(["resample", "decimate"]);
+
 /** Makes a problem of stage number `index` a diagnostic at its place in the pipeline file. */
 export function asDiagnostic(loaded: LoadedPipeline, index: number, p: Problem): Diagnostic {
   const { line, column } = loaded.at(["chain", index, ...p.path]);
@@ -40,6 +43,7 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
   const everywhere = pipeline.channels.map((_, c) => c);
   let report: ReportDesign["report"] | null = null;
   let reportAt = -1;
+  let failed = false;
   let signal: Signal | null = {
     grid: null,
     channels: pipeline.channels.map(({ name, unit }) => ({ name, unit })),
@@ -59,15 +63,19 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
     const order = orderProblem(stage.name, signal, reportAt >= 0);
     if (order !== null) {
       say(order);
-      // After a stage that stands too early nothing is known of the signal; look for no further mistakes.
-      if (signal.grid === null) signal = null;
+      failed = true;
       continue;
     }
     const outcome = stage.design(entry.settings as never, signal, selected);
-    for (const p of outcome.problems) say(p);
+    for (const p of outcome.problems) {
+      // What folds cannot be judged while a filter above is not known.
+      if (!(failed && p.code === "aliases-on-design")) say(p);
+    }
     const { design } = outcome;
     if (design === null) {
-      signal = null;
+      failed = true;
+      // The search for mistakes goes on as long as the rate is known.
+      if (CHANGES_GRID.has(stage.name)) signal = null;
       continue;
     }
     planned.push({
@@ -150,7 +158,7 @@ function orderProblem(stage: string, signal: Signal, reported: boolean): Problem
       code: "before-grid",
       severity: "error",
       path: ["stage"],
-      problem: `${stage} works on an even grid, and the rows are not on one yet`,
+      problem: "this works on an even grid, and the rows are not on one yet",
       given: `${stage} before resample`,
       allowed: "resample first",
       todo: "move resample above it",

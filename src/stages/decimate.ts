@@ -191,7 +191,7 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
   };
 }
 
-const db = (x: number): string => `${x.toFixed(1)} dB`;
+const db = (x: number): string => `${(Math.abs(x) < 0.05 ? 0 : x).toFixed(1)} dB`;
 const hertz = (f: number): string => `${Number(f.toPrecision(4))} Hz`;
 
 export const decimate: Stage<typeof settings> = {
