@@ -40,6 +40,9 @@ function innerJsonSchema(schema: z.ZodType): JsonSchema {
   return rest;
 }
 
+/** Nobody reads more bad entries of one collection than this, and each costs time. */
+const MOST_PARTS = 200;
+
 interface ListTold {
   readonly about: string;
   readonly min?: number;
@@ -83,6 +86,7 @@ export function list<T>(element: Kind<T>, o: ListTold): Kind<T[]> {
       if (given.length < min || given.length > (o.max ?? Number.POSITIVE_INFINITY))
         parts.push({ issues: [wrongLength("list", given.length, min, size)] });
       for (const [at, part] of given.entries()) {
+        if (parts.length > MOST_PARTS) break;
         // A hole in the list is an empty value, not a missing setting.
         const parsed = element.safeParse(part ?? null);
         if (parsed.success) is.push(parsed.data);
@@ -127,6 +131,7 @@ export function record<T>(
     if (keys.length < min)
       parts.push({ issues: [wrongLength("mapping", keys.length, min, `at least ${min}`)] });
     for (const key of keys) {
+      if (parts.length > MOST_PARTS) break;
       const bad = nameMisfit(key);
       if (bad !== null) parts.push({ at: key, issues: [custom(bad.problem, { ...bad.facts, onKey: true })] });
       const parsed = element.safeParse(value[key] ?? null);

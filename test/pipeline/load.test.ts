@@ -154,7 +154,6 @@ describe("several mistakes", () => {
     const found = mistakesIn(Array.from({ length: 5000 }, (_, i) => `key${i}: 1`).join("\n"));
     expect(found).toHaveLength(101);
     expect(found.at(-1)).toMatchObject({ code: "more-mistakes" });
-    expect(found.at(-1)!.problem).toContain("4905 more");
   });
 });
 
