@@ -1,0 +1,72 @@
+import { scaleLinear, scaleUtc } from "d3-scale";
+import { area } from "d3-shape";
+import type { ChainChannelAccount } from "../account-format.ts";
+import { number, timeForPeople } from "../text.ts";
+import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./frame.ts";
+
+/** Lowest to highest value per column of time, resampled input behind, clean series before it; gaps stay open. */
+export function stripPlot(id: string, channel: ChainChannelAccount, title: string): string {
+  const s = channel.strip;
+  const values = [...s.in_low, ...s.in_high, ...s.out_low, ...s.out_high].filter(
+    (v): v is number => v !== null,
+  );
+  if (values.length === 0) return "";
+  const start = Date.parse(s.from);
+  const columns = s.in_low.length;
+  const at = (i: number) => start + i * s.column_s * 1000;
+  const low = Math.min(...values);
+  const high = Math.max(...values);
+  const pad = high > low ? 0.05 * (high - low) : Math.max(1e-9, Math.abs(high) * 0.05);
+  const x = scaleUtc()
+    .domain([at(0), at(columns)])
+    .range([LEFT, WIDTH - RIGHT]);
+  const y = scaleLinear()
+    .domain([low - pad, high + pad])
+    .range([HEIGHT - BOTTOM, TOP]);
+  const format = x.tickFormat(6);
+  const band = (kind: string, lows: readonly (number | null)[], highs: readonly (number | null)[]) => {
+    const points = lows.flatMap((v, i) => {
+      const w = highs[i] ?? null;
+      // Each column is drawn over its whole width, so that a single one between gaps is still seen.
+      return [
+        { t: at(i), low: v, high: w },
+        { t: at(i + 1), low: v, high: w },
+      ];
+    });
+    const path = area<(typeof points)[number]>()
+      .defined((p) => p.low !== null && p.high !== null)
+      .x((p) => x(p.t))
+      .y0((p) => y(p.low!) + 0.5)
+      .y1((p) => y(p.high!) - 0.5)
+      .digits(1);
+    return `<path class="band ${kind}" d="${path(points) ?? ""}"/>`;
+  };
+  // The clean series has fewer samples than columns have room for: a line through its columns' middles.
+  const middles = s.out_low.flatMap((v, i) => {
+    const w = s.out_high[i] ?? null;
+    return v === null || w === null ? [] : [[at(i) + s.column_s * 500, (v + w) / 2, i] as const];
+  });
+  const spacing = Math.max(1, Math.round(columns / Math.max(1, middles.length)));
+  const after: (readonly [number, number | null])[] = [];
+  middles.forEach(([t, v, i], n) => {
+    const before = middles[n - 1];
+    if (before !== undefined && i - before[2] > 2 * spacing + 1) after.push([t, null]);
+    after.push([t, v]);
+  });
+  return plot({
+    id,
+    title,
+    description: `From ${timeForPeople(s.from)}, ${columns} columns of ${number(s.column_s)} s; values from ${number(low)} to ${number(high)} ${channel.unit}.`,
+    x: {
+      scale: x as unknown as Scale,
+      ticks: x.ticks(6).map((d) => ({ at: d.getTime(), text: format(d) })),
+      label: `time, UTC, from ${timeForPeople(s.from)}`,
+    },
+    y: { scale: y, ticks: y.ticks(6).map((v) => ({ at: v, text: number(v, 6) })), label: channel.unit },
+    traces: [
+      { kind: "before", name: "before: lowest to highest", points: [] },
+      { kind: "after", name: "after", points: after },
+    ],
+    under: band("before", s.in_low, s.in_high),
+  });
+}
