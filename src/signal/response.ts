@@ -44,11 +44,20 @@ export function peakGain(taps: Float64Array, from: number, to: number): { gain: 
 }
 
 /** Smallest |H| on [from, to], end points included. */
-export function lowestGain(taps: Float64Array, from: number, to: number): { gain: number; frequency: number } {
+export function lowestGain(
+  taps: Float64Array,
+  from: number,
+  to: number,
+): { gain: number; frequency: number } {
   return extremeGain(taps, from, to, -1);
 }
 
-function extremeGain(taps: Float64Array, from: number, to: number, sign: 1 | -1): { gain: number; frequency: number } {
+function extremeGain(
+  taps: Float64Array,
+  from: number,
+  to: number,
+  sign: 1 | -1,
+): { gain: number; frequency: number } {
   const { gains, size } = denseGains(taps);
   const value = (f: number) => sign * gainAt(taps, f);
   const first = Math.ceil(from * size);
@@ -66,7 +75,8 @@ function extremeGain(taps: Float64Array, from: number, to: number, sign: 1 | -1)
   let looked = 0;
   for (let k = first; k <= last && looked < 64; k++) {
     const g = sign * gains[k]!;
-    const peak = g >= near && !(k > first && sign * gains[k - 1]! > g) && !(k < last && sign * gains[k + 1]! > g);
+    const peak =
+      g >= near && !(k > first && sign * gains[k - 1]! > g) && !(k < last && sign * gains[k + 1]! > g);
     if (!peak) continue;
     looked++;
     const top = climb(value, Math.max(from, (k - 1) / size), Math.min(to, (k + 1) / size));
@@ -75,7 +85,10 @@ function extremeGain(taps: Float64Array, from: number, to: number, sign: 1 | -1)
       at = top.at;
     }
   }
-  const ends = [climb(value, from, Math.min(to, first / size)), climb(value, Math.max(from, last / size), to)];
+  const ends = [
+    climb(value, from, Math.min(to, first / size)),
+    climb(value, Math.max(from, last / size), to),
+  ];
   for (const top of ends)
     if (top.value > best && top.value >= rough) {
       best = top.value;

@@ -96,7 +96,11 @@ export function achievedBy(
   let leak = 0;
   for (const [from, to] of stop) leak = Math.max(leak, peakGain(taps, from, to).gain);
   for (const [from, to] of pass) {
-    ripple = Math.max(ripple, Math.abs(dB(peakGain(taps, from, to).gain)), Math.abs(dB(lowestGain(taps, from, to).gain)));
+    ripple = Math.max(
+      ripple,
+      Math.abs(dB(peakGain(taps, from, to).gain)),
+      Math.abs(dB(lowestGain(taps, from, to).gain)),
+    );
   }
   return { ripple_dB: ripple, attenuation_dB: -dB(leak) };
 }
@@ -114,9 +118,21 @@ function bandsOf(spec: Pick<Specification, "shape" | "pass" | "stop">): { pass: 
     case "high-pass":
       return { pass: [[p0, 0.5]], stop: [[0, s0]] };
     case "band-pass":
-      return { pass: [[p0, p1]], stop: [[0, s0], [s1, 0.5]] };
+      return {
+        pass: [[p0, p1]],
+        stop: [
+          [0, s0],
+          [s1, 0.5],
+        ],
+      };
     case "band-stop":
-      return { pass: [[0, p0], [p1, 0.5]], stop: [[s0, s1]] };
+      return {
+        pass: [
+          [0, p0],
+          [p1, 0.5],
+        ],
+        stop: [[s0, s1]],
+      };
   }
 }
 
