@@ -18,7 +18,7 @@ export function htmlTable(
     row
       .map((cell, i) => (i === 0 ? `<th scope="row">${escaped(cell)}</th>` : `<td>${escaped(cell)}</td>`))
       .join("");
-  return `<div class="wide" tabindex="0" role="region" aria-labelledby="${id}"><table><caption id="${id}">${escaped(caption)}</caption><thead><tr>${head
+  return `<div class="wide${head.length === 2 ? " pairs" : ""}" tabindex="0" role="region" aria-labelledby="${id}"><table><caption id="${id}">${escaped(caption)}</caption><thead><tr>${head
     .map((h) => `<th scope="col">${escaped(h)}</th>`)
     .join(
       "",

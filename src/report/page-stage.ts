@@ -3,7 +3,18 @@ import type { ChannelAccount, StageAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
 import { psdPlot } from "./plots/psd.ts";
 import { responsePlot } from "./plots/response.ts";
-import { count, dB, edges, hertz, number, percent, timeForPeople, withPeriod, withUnit } from "./text.ts";
+import {
+  count,
+  dB,
+  edges,
+  hertz,
+  number,
+  percent,
+  squared,
+  timeForPeople,
+  withPeriod,
+  withUnit,
+} from "./text.ts";
 
 export function stageSection(s: StageAccount): string {
   return [
@@ -78,7 +89,6 @@ function folds(s: StageAccount): string {
 function channel(s: StageAccount, name: string, c: ChannelAccount): string {
   if (!c.accounted || s.stage === "report") return "";
   const id = anchor("s", s.place, name);
-  const unit2 = `(${c.unit})²`;
   const rows: string[][] = [
     ["samples compared", count(c.samples)],
     ["mean", `${withUnit(c.mean_in, c.unit, 6)} → ${withUnit(c.mean_out, c.unit, 6)}`],
@@ -103,7 +113,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
       ? ""
       : htmlTable(
           `t-bands-${id}`,
-          `${name}: power in ${unit2} by band: before = after + removed + cross`,
+          `${name}: power in ${squared(c.unit)} by band: before = after + removed + cross`,
           ["band", "from", "to", "before", "after", "removed", "cross", "after, predicted", "finding"],
           c.bands.map((b) => [
             b.name,
@@ -136,7 +146,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
     p === null
       ? "<p>No spectrum: no gap-free stretch was as long as a segment.</p>"
       : `${psdPlot(`psd-${id}`, p, c.unit, `${name}: power spectral density before, after and removed`)}<p>${escaped(
-          `${p.window} window, ${p.segment_samples} samples a segment, ${p.overlap_pct} % overlap, ${count(p.segments)} segments, ${number(
+          `${p.window[0]!.toUpperCase()}${p.window.slice(1)} window, ${p.segment_samples} samples a segment, ${p.overlap_pct} % overlap, ${count(p.segments)} segments, ${number(
             p.degrees_of_freedom,
           )} degrees of freedom; bins ${hertz(p.resolution_Hz)} apart, noise bandwidth ${hertz(p.enbw_Hz)}. True values lie with 95 % probability between ${number(
             p.interval_95.lower,

@@ -1,11 +1,11 @@
 /** The report: one self-contained page, a function of the account alone. No script, nothing fetched. */
 import { createHash } from "node:crypto";
-import type { Account } from "./account-format.ts";
+import type { Account, ChannelAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
 import { stageSection } from "./page-stage.ts";
 import { STYLE } from "./page-style.ts";
 import { stripPlot } from "./plots/strip.ts";
-import { count, duration, number, timeForPeople, withUnit } from "./text.ts";
+import { count, dB, duration, number, percent, timeForPeople, withPeriod, withUnit } from "./text.ts";
 
 export function renderReportPage(account: Account): string {
   const title = `${account.pipeline.name}${account.logger === null ? "" : ` · ${account.logger}`}`;
@@ -13,6 +13,7 @@ export function renderReportPage(account: Account): string {
   const sections: [string, string, string][] = [
     ["inputs", "What went in", inputs(account)],
     ["outputs", "What came out", outputs(account)],
+    ["removed", "What was removed", removed(account)],
     ["delay", "How late it is", delay(account)],
     ...(account.requirements.length > 0
       ? ([["requirements", "What was asked of it", requirements(account)]] as [string, string, string][])
@@ -67,13 +68,46 @@ function headline(account: Account): string {
     ],
     ["late by", duration(chain.delay_s)],
   ];
-  for (const [name, c] of Object.entries(chain.channels))
-    if (c.rms_in !== null && c.rms_out !== null)
-      facts.push([
-        `${name}: rms about the mean`,
-        `${withUnit(c.rms_in, c.unit)} before, ${withUnit(c.rms_out, c.unit)} after`,
-      ]);
+  for (const { name } of account.channels) {
+    const parts = measured(account)
+      .filter((m) => m.name === name && (m.c.variance_removed_pct ?? 0) > 0)
+      .map((m) => `${percent(m.c.variance_removed_pct)} by ${m.stage}`);
+    if (parts.length > 0) facts.push([`variance taken from ${name}`, parts.join(", ")]);
+  }
   return `<dl class="facts">${facts.map(([k, v]) => `<div><dt>${escaped(k)}</dt><dd>${escaped(v)}</dd></div>`).join("")}</dl>`;
+}
+
+/** Stages and channels whose removal was measured. */
+function measured({ stages }: Account): { stage: string; name: string; c: ChannelAccount }[] {
+  return stages.flatMap((s) =>
+    Object.entries(s.channels)
+      .filter(([, c]) => c.accounted && s.stage !== "report")
+      .map(([name, c]) => ({ stage: `${s.place} ${s.stage}`, name, c })),
+  );
+}
+
+function removed(account: Account): string {
+  const list = measured(account);
+  if (list.length === 0) return "<p>The chain has no report stage, so what was removed was not measured.</p>";
+  return `<p>Each stage compared with its own input, sample by sample after the delay is taken out. What a stage did to
+each band and tone stands in its own section below.</p>${htmlTable(
+    "t-removed",
+    "Taken out, stage by stage",
+    ["stage", "channel", "variance removed", "rms removed", "strongest tone taken out", "by"],
+    list.map(({ stage, name, c }) => {
+      const tone = c.tones.find((t) => t.gain_dB < -3);
+      return [
+        stage,
+        name,
+        percent(c.variance_removed_pct),
+        withUnit(c.rms_removed, c.unit),
+        tone === undefined
+          ? "none found"
+          : `${withPeriod(tone.frequency_Hz)}, ${withUnit(tone.amplitude, c.unit)}`,
+        tone === undefined ? "–" : dB(-tone.gain_dB),
+      ];
+    }),
+  )}`;
 }
 
 function inputs(account: Account): string {
@@ -170,7 +204,14 @@ function outputs(account: Account): string {
     ).map((state) => [state, ...names.map((n) => count(chain.channels[n]!.counts[state]))]),
   );
   const strips = names
-    .map((n) => stripPlot(anchor("strip", n), chain.channels[n]!, `${n}: resampled input and clean series`))
+    .map((n) =>
+      stripPlot(
+        anchor("strip", n),
+        chain.channels[n]!,
+        chain.first,
+        `${n}: resampled input and clean series`,
+      ),
+    )
     .join("");
   return `<p>From ${escaped(timeForPeople(chain.first))} to ${escaped(timeForPeople(chain.last))}, a sample every ${escaped(
     duration(chain.out_interval_s),

@@ -62,6 +62,9 @@ export function hertz(f: number | null | undefined, digits = 4): string {
   return withUnit(f / (factor as number), unit as string, digits);
 }
 
+/** A unit squared: m², (m3/s)². */
+export const squared = (unit: string): string => (/^\p{L}+$/u.test(unit) ? `${unit}²` : `(${unit})²`);
+
 /** A frequency and its period: 2 mHz (8.33 min). */
 export function withPeriod(f: number | null | undefined, digits = 4): string {
   if (f === null || f === undefined) return "–";

@@ -6,7 +6,7 @@ import { escaped } from "../html.ts";
 export const WIDTH = 720;
 export const HEIGHT = 300;
 export const LEFT = 78;
-export const RIGHT = 16;
+export const RIGHT = 40;
 export const TOP = 14;
 export const BOTTOM = 46;
 

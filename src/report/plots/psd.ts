@@ -1,10 +1,10 @@
 import { scaleLog } from "d3-scale";
 import type { SpectrumAccount } from "../account-format.ts";
-import { hertz } from "../text.ts";
+import { hertz, squared } from "../text.ts";
 import { BOTTOM, decades, HEIGHT, LEFT, plot, powerOfTen, RIGHT, TOP, WIDTH } from "./frame.ts";
 
 /** Dynamic range shown below the highest density: what lies deeper is rounding. */
-const RANGE = 1e16;
+const RANGE = 1e14;
 
 /** Power spectral density before, after and removed, log-log, with the 95 % interval as a bar. */
 export function psdPlot(id: string, s: SpectrumAccount, unit: string, title: string): string {
@@ -29,7 +29,7 @@ export function psdPlot(id: string, s: SpectrumAccount, unit: string, title: str
   return plot({
     id,
     title,
-    description: `Density before, after and removed from ${hertz(f[0]!)} to ${hertz(f.at(-1)!)}; highest ${high.toPrecision(3)} ${unit}²/Hz. The figures are in the account.`,
+    description: `Density before, after and removed from ${hertz(f[0]!)} to ${hertz(f.at(-1)!)}; highest ${high.toPrecision(3)} ${squared(unit)}/Hz. The figures are in the account.`,
     x: {
       scale: x,
       ticks: (ticks.length > 1 ? ticks : x.ticks(3)).map((at) => ({ at, text: hertz(at, 2) })),
@@ -38,7 +38,7 @@ export function psdPlot(id: string, s: SpectrumAccount, unit: string, title: str
     y: {
       scale: y,
       ticks: decades(low / 1.5, high * 3, 7).map((at) => ({ at, text: powerOfTen(at) })),
-      label: `PSD, (${unit})²/Hz`,
+      label: `PSD, ${squared(unit)}/Hz`,
     },
     traces: [
       { kind: "removed", name: "removed", points: points(s.psd_removed) },

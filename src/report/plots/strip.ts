@@ -5,7 +5,12 @@ import { number, timeForPeople } from "../text.ts";
 import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./frame.ts";
 
 /** Lowest to highest value per column of time, resampled input behind, clean series before it; gaps stay open. */
-export function stripPlot(id: string, channel: ChainChannelAccount, title: string): string {
+export function stripPlot(
+  id: string,
+  channel: ChainChannelAccount,
+  first: string | null,
+  title: string,
+): string {
   const s = channel.strip;
   const values = [...s.in_low, ...s.in_high, ...s.out_low, ...s.out_high].filter(
     (v): v is number => v !== null,
@@ -23,7 +28,8 @@ export function stripPlot(id: string, channel: ChainChannelAccount, title: strin
   const y = scaleLinear()
     .domain([low - pad, high + pad])
     .range([HEIGHT - BOTTOM, TOP]);
-  const format = x.tickFormat(6);
+  const ticks = x.ticks(5);
+  const format = clockFormat(ticks);
   const band = (kind: string, lows: readonly (number | null)[], highs: readonly (number | null)[]) => {
     const points = lows.flatMap((v, i) => {
       const w = highs[i] ?? null;
@@ -59,8 +65,8 @@ export function stripPlot(id: string, channel: ChainChannelAccount, title: strin
     description: `From ${timeForPeople(s.from)}, ${columns} columns of ${number(s.column_s)} s; values from ${number(low)} to ${number(high)} ${channel.unit}.`,
     x: {
       scale: x as unknown as Scale,
-      ticks: x.ticks(6).map((d) => ({ at: d.getTime(), text: format(d) })),
-      label: `time, UTC, from ${timeForPeople(s.from)}`,
+      ticks: ticks.map((d) => ({ at: d.getTime(), text: format(d) })),
+      label: `time, UTC; the record begins ${timeForPeople(first)}`,
     },
     y: { scale: y, ticks: y.ticks(6).map((v) => ({ at: v, text: number(v, 6) })), label: channel.unit },
     traces: [
@@ -69,4 +75,14 @@ export function stripPlot(id: string, channel: ChainChannelAccount, title: strin
     ],
     under: band("before", s.in_low, s.in_high),
   });
+}
+
+/** Ticks in 24-hour time, as fine as their spacing needs, or as dates; the same in every locale. */
+function clockFormat(ticks: readonly Date[]): (d: Date) => string {
+  const part = (d: Date, from: number, to: number) => d.toISOString().slice(from, to);
+  const step_s = ticks.length < 2 ? 1 : (ticks[1]!.getTime() - ticks[0]!.getTime()) / 1000;
+  if (step_s > 27 * 86_400) return (d) => part(d, 0, 7);
+  if (step_s >= 86_400) return (d) => part(d, 5, 10);
+  if (step_s >= 60) return (d) => (part(d, 11, 16) === "00:00" ? part(d, 5, 10) : part(d, 11, 16));
+  return (d) => part(d, 11, step_s >= 1 ? 19 : 23);
 }
