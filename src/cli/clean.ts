@@ -210,7 +210,7 @@ function scopeOf(options: CleanOptions): Scope {
 
 /** Troubles of the machine that a person can mend, as diagnostics; null for anything else. */
 function systemDiagnostic(error: unknown, folder: string): Diagnostic[] | null {
-  const code = (error as NodeJS.ErrnoException).code;
+  const { code, syscall } = error as NodeJS.ErrnoException;
   const known: Record<string, string> = {
     EACCES: "permission denied",
     EPERM: "permission denied",
@@ -218,11 +218,14 @@ function systemDiagnostic(error: unknown, folder: string): Diagnostic[] | null {
     ENOSPC: "the disk is full",
     EDQUOT: "the disk quota is used up",
     ENOTDIR: "a part of the path is not a folder",
+    EEXIST: "a file stands where the folder should be",
+    ENOENT: "the folder went away",
+    EIO: "the disk reports an error",
     EISDIR: "a folder stands where a file should go",
     EMFILE: "too many files are open",
     ENAMETOOLONG: "a file name is too long",
   };
-  if (code === undefined || known[code] === undefined) return null;
+  if (code === undefined || syscall === undefined) return null;
   return [
     {
       code: "cannot-write",
@@ -230,7 +233,7 @@ function systemDiagnostic(error: unknown, folder: string): Diagnostic[] | null {
       file: folder,
       line: 0,
       column: 0,
-      problem: `the outputs could not be written: ${known[code]}`,
+      problem: `the outputs could not be written: ${known[code] ?? syscall}`,
       given: code,
       allowed: "a folder that can be written to, with room",
       todo: "mend it and run again; what was there before is untouched",
