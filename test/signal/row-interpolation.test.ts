@@ -5,7 +5,14 @@ import type { GridBlock } from "../../src/signal/grid-block.ts";
 import { FILLED, MISSING } from "../../src/signal/marks.ts";
 import { type Between, RowInterpolator } from "../../src/signal/row-interpolation.ts";
 
-function resample(grid: Grid, between: Between, longestGap: number, t: number[], v: number[], block = t.length) {
+function resample(
+  grid: Grid,
+  between: Between,
+  longestGap: number,
+  t: number[],
+  v: number[],
+  block = t.length,
+) {
   const rows = new RowInterpolator(grid, between, longestGap);
   const out: GridBlock[] = [];
   for (let i = 0; i < t.length; i += block) {
@@ -32,13 +39,19 @@ function twin(grid: Grid, between: Between, longestGap: number, t: number[], v: 
     const after = rows.find((r) => r.time >= at);
     let value = Number.NaN;
     let mark = MISSING;
-    const gap = before !== undefined && after !== undefined ? after.time - before.time : Number.POSITIVE_INFINITY;
+    const gap =
+      before !== undefined && after !== undefined ? after.time - before.time : Number.POSITIVE_INFINITY;
     if (before?.time === at) [value, mark] = [before.value, 0];
     else if (gap <= longestGap && before !== undefined && after !== undefined) {
       mark = gap > 1.5 * interval ? FILLED : 0;
       const u = (at - before.time) / gap;
       const late = at - before.time > after.time - at;
-      value = between === "straight-line" ? before.value + (after.value - before.value) * u : late ? after.value : before.value;
+      value =
+        between === "straight-line"
+          ? before.value + (after.value - before.value) * u
+          : late
+            ? after.value
+            : before.value;
       if (between === "nearest-sample" && Math.min(at - before.time, after.time - at) <= half) mark = 0;
     } else if (between === "nearest-sample") {
       const b = before === undefined ? Number.POSITIVE_INFINITY : at - before.time;
@@ -58,8 +71,16 @@ describe("rows onto a grid", () => {
         fc.constantFrom(1000, 2500, 6000),
         fc.array(
           fc.record({
-            step: fc.oneof(fc.integer({ min: 1, max: 2200 }), fc.integer({ min: 1, max: 9000 }), fc.constant(1000), fc.constant(500)),
-            value: fc.oneof({ weight: 4, arbitrary: fc.integer({ min: -99, max: 99 }) }, { weight: 1, arbitrary: fc.constant(Number.NaN) }),
+            step: fc.oneof(
+              fc.integer({ min: 1, max: 2200 }),
+              fc.integer({ min: 1, max: 9000 }),
+              fc.constant(1000),
+              fc.constant(500),
+            ),
+            value: fc.oneof(
+              { weight: 4, arbitrary: fc.integer({ min: -99, max: 99 }) },
+              { weight: 1, arbitrary: fc.constant(Number.NaN) },
+            ),
           }),
           { minLength: 2, maxLength: 30 },
         ),
