@@ -154,6 +154,7 @@ function publish(task: SeriesTask, spool: RowSpool, timing: Timing, inputs: read
       inputs,
       timing,
       results: made.results,
+      scope: task.scope,
       rows: spool.rows,
       first_us: made.clean.firstTime_us,
       last_us: made.clean.lastTime_us,

@@ -2,6 +2,7 @@
 import { Command, CommanderError } from "commander";
 import { type CleanOptions, clean, type Streams } from "./clean.ts";
 import { DONE, WRONG } from "./exit-codes.ts";
+import type { RecheckOptions } from "./recheck.ts";
 import { type RehearseOptions, rehearse } from "./rehearse.ts";
 import { VERSION } from "./version.ts";
 
@@ -44,6 +45,15 @@ export async function main(words: readonly string[], streams: Streams): Promise<
     .option("--json", "print the design with the account's keys")
     .action((path: string, options: RehearseOptions) => {
       code = rehearse(path, options, streams);
+    });
+  program
+    .command("recheck")
+    .argument("<account>", "account of an earlier run (NAME.account.json)")
+    .description("run a recorded run again and name the first input, setting or output that differs")
+    .option("--pipeline <file>", "the pipeline file, when it is not near the account")
+    .action(async (path: string, options: RecheckOptions) => {
+      const { recheck } = await import("./recheck.ts");
+      code = await recheck(path, options, streams);
     });
   program
     .command("stages")

@@ -11,6 +11,8 @@ export interface Account {
   /** The logger that the series belongs to; null when the pipeline has one series. */
   logger: string | null;
   channels: { name: string; unit: string; column: string }[];
+  /** Stretch of time that was asked for; null where it is open. */
+  scope: { from: string | null; until: string | null };
   inputs: InputAccount[];
   timing: TimingAccount | null;
   stages: StageAccount[];

@@ -1,5 +1,6 @@
 /** Assembles the account of one series (or one day of it). */
 import type { ChannelResult } from "../engine/run-chain.ts";
+import type { Scope } from "../engine/scope.ts";
 import type { TimeStrip } from "../engine/time-strip.ts";
 import type { Timing } from "../engine/timing.ts";
 import type { FileAccount } from "../logs/rows.ts";
@@ -40,6 +41,7 @@ export interface AccountParts {
   readonly inputs: readonly FileAccount[];
   readonly timing: Timing;
   readonly results: readonly ChannelResult[];
+  readonly scope: Scope;
   readonly rows: number;
   readonly first_us: number | null;
   readonly last_us: number | null;
@@ -65,6 +67,7 @@ export function makeAccount(parts: AccountParts): Account {
     },
     logger: parts.logger,
     channels: pipeline.channels.map(({ name, unit, column }) => ({ name, unit, column })),
+    scope: { from: scopeText(parts.scope.from_us), until: scopeText(parts.scope.until_us) },
     inputs: parts.inputs.map((file) =>
       inputAccount(
         file,
@@ -80,6 +83,8 @@ export function makeAccount(parts: AccountParts): Account {
     outputs: [...parts.outputs],
   };
 }
+
+const scopeText = (us: number): string | null => (Number.isFinite(us) ? isoTime(us) : null);
 
 /** What the design knows: the same keys, without data. */
 export function designAccount(
