@@ -31,3 +31,8 @@ export function kaiserBeta(attenuation_dB: number): number {
 export function kaiserTaps(attenuation_dB: number, width: number): number {
   return Math.ceil((attenuation_dB - 7.95) / (2.285 * 2 * Math.PI * width) + 1);
 }
+
+/** The attenuation in dB that Kaiser's formula expects of so many taps: the inverse of kaiserTaps. */
+export function kaiserAttenuation(taps: number, width: number): number {
+  return 2.285 * (taps - 1) * 2 * Math.PI * width + 7.95;
+}

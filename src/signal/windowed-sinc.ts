@@ -4,7 +4,7 @@
  * filters by windowing" (2nd ed. 7.2; recalled from memory).
  */
 import { DesignError } from "./design-error.ts";
-import { responseAt } from "./response.ts";
+import { gainAt } from "./frequency-response.ts";
 import { type WindowKind, windowCoefficients } from "./windows.ts";
 
 export type FilterShape = "low-pass" | "high-pass" | "band-pass" | "band-stop";
@@ -22,41 +22,70 @@ export interface WindowedSinc {
 /**
  * Symmetric taps. The gain is 1 at zero frequency (low-pass, band-stop), at the Nyquist frequency (high-pass)
  * or at the band's centre (band-pass).
- * @throws DesignError for an even length that the shape cannot have
+ * @throws DesignError for edges out of range, for an even length that the shape cannot have, and for a window
+ *   so short that nothing passes
  */
 export function designWindowedSinc(design: WindowedSinc): Float64Array {
   const { taps: n, shape, edges, window } = design;
-  if (n % 2 === 0 && (shape === "high-pass" || shape === "band-stop"))
-    throw new DesignError({
-      problem: `a symmetric ${shape} filter of even length is zero at the Nyquist frequency, where it should pass`,
-      given: `${n} taps`,
-      allowed: "an odd number of taps",
-      todo: `use ${n + 1} taps`,
-    });
+  refuseImpossible(design);
   const h = new Float64Array(n);
   const w = windowCoefficients(window, n, "symmetric", design.beta);
-  const low = (f: number, m: number) => (m === 0 ? 2 * f : Math.sin(2 * Math.PI * f * m) / (Math.PI * m));
-  const ideal = (m: number): number => {
-    const delta = m === 0 ? 1 : 0;
-    switch (shape) {
-      case "low-pass":
-        return low(edges[0]!, m);
-      case "high-pass":
-        return delta - low(edges[0]!, m);
-      case "band-pass":
-        return low(edges[1]!, m) - low(edges[0]!, m);
-      case "band-stop":
-        return delta - (low(edges[1]!, m) - low(edges[0]!, m));
-    }
-  };
   for (let i = 0; 2 * i < n; i++) {
-    const m = (n - 1) / 2 - i;
-    h[i] = ideal(m) * w[i]!;
+    h[i] = ideal(shape, edges, (n - 1) / 2 - i) * w[i]!;
     h[n - 1 - i] = h[i]!;
   }
   const at = shape === "high-pass" ? 0.5 : shape === "band-pass" ? (edges[0]! + edges[1]!) / 2 : 0;
-  const { re, im } = responseAt(h, at);
-  const gain = Math.hypot(re, im);
+  const gain = gainAt(h, at);
+  // Windows with zero end points leave nothing of two taps; very short band-passes may cancel at their centre.
+  if (!(gain > 1e-9))
+    throw new DesignError({
+      problem: `a ${shape} filter of this length and window passes nothing where it should`,
+      given: `${n} taps, window ${window}`,
+      allowed: "a length at which the window leaves some taps",
+      todo: "use more taps",
+    });
   for (let i = 0; i < n; i++) h[i]! /= gain;
   return h;
+}
+
+/** The ideal filter's impulse response, m samples from its centre. */
+function ideal(shape: FilterShape, edges: readonly number[], m: number): number {
+  const below = (f: number) => (m === 0 ? 2 * f : Math.sin(2 * Math.PI * f * m) / (Math.PI * m));
+  const all = m === 0 ? 1 : 0;
+  switch (shape) {
+    case "low-pass":
+      return below(edges[0]!);
+    case "high-pass":
+      return all - below(edges[0]!);
+    case "band-pass":
+      return below(edges[1]!) - below(edges[0]!);
+    case "band-stop":
+      return all - (below(edges[1]!) - below(edges[0]!));
+  }
+}
+
+function refuseImpossible({ taps, shape, edges }: WindowedSinc): void {
+  if (!(Number.isInteger(taps) && taps >= 1))
+    throw new DesignError({
+      problem: "a filter has a whole number of taps",
+      given: `${taps} taps`,
+      allowed: "1 or more",
+      todo: "give a whole number",
+    });
+  const wanted = shape === "low-pass" || shape === "high-pass" ? 1 : 2;
+  const rising = edges.every((f, i) => f > (i === 0 ? 0 : edges[i - 1]!) && f < 0.5);
+  if (edges.length !== wanted || !rising)
+    throw new DesignError({
+      problem: `a ${shape} filter has ${wanted === 1 ? "one edge" : "two rising edges"} between 0 and the Nyquist frequency`,
+      given: `${edges.join(", ")} cycles/sample`,
+      allowed: "above 0 and below 0.5 cycles/sample",
+      todo: "move the edges",
+    });
+  if (taps % 2 === 0 && (shape === "high-pass" || shape === "band-stop"))
+    throw new DesignError({
+      problem: `a symmetric ${shape} filter of even length is zero at the Nyquist frequency, where it should pass`,
+      given: `${taps} taps`,
+      allowed: "an odd number of taps",
+      todo: `use ${taps + 1} taps`,
+    });
 }
