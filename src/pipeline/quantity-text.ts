@@ -16,15 +16,21 @@ const HERTZ_STEPS: readonly (readonly [unit: string, hertz: number, up_to: numbe
   ["kHz", 1e3, Number.POSITIVE_INFINITY],
 ];
 
+/** A number longer than this does not read well in minutes, hours or days, and may not be exact there. */
+const READABLE = 8;
+
 /**
  * A length of time in the unit that reads best: `10 ms`, `90 s`, `10 min`.
  * @param seconds  0 or more
- * @param digits   significant digits; left out: as many as give the number back to 15 digits
+ * @param digits   significant digits; left out: as many as give whole microseconds back exactly
  */
 export function formatDuration(seconds: number, digits = 15): string {
   if (seconds === 0) return "0 s";
   const [unit, size] = TIME_STEPS.find(([, , upTo]) => seconds < upTo)!;
-  return `${Number((seconds / size).toPrecision(digits))} ${unit}`;
+  const number = String(Number((seconds / size).toPrecision(digits)));
+  return size > 1 && number.length > READABLE
+    ? `${Number(seconds.toPrecision(digits))} s`
+    : `${number} ${unit}`;
 }
 
 /**

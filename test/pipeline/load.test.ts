@@ -1,4 +1,4 @@
-import { mkdtempSync, rmSync, symlinkSync, writeFileSync } from "node:fs";
+import { mkdtempSync, readdirSync, readFileSync, rmSync, symlinkSync, writeFileSync } from "node:fs";
 import { tmpdir } from "node:os";
 import { join } from "node:path";
 import { afterAll, describe, expect, test } from "vitest";
@@ -6,6 +6,8 @@ import { type Diagnostic, DiagnosticError } from "../../src/diagnostics.ts";
 import { loadPipeline, readPipeline } from "../../src/pipeline/load.ts";
 import { FAKE_STAGES } from "./fake-stages.ts";
 import { GOOD, MISTAKES, withMistake } from "./mistakes.ts";
+
+const SOURCES = new URL("../../src/pipeline/", import.meta.url);
 
 function mistakesIn(text: string): readonly Diagnostic[] {
   try {
@@ -167,7 +169,7 @@ describe("a file that is no pipeline", () => {
   symlinkSync("loop", join(folder, "loop"));
   const latin = Buffer.concat([Buffer.from("name: a\nabout: Stra"), Buffer.from([0xdf]), Buffer.from("e\n")]);
 
-  test.each([
+  const cases = [
     ["cannot-read", "no such file", 0, join(folder, "none.yaml")],
     ["cannot-read", "this is a folder", 0, folder],
     ["cannot-read", "not a folder", 0, join(write("file", "x"), "x")],
@@ -181,7 +183,22 @@ describe("a file that is no pipeline", () => {
     ["not-a-pipeline", "the file is empty", 1, write("blank", "# nothing\n")],
     ["not-a-pipeline", "a list of 2", 1, write("list", "- a\n- b\n")],
     ["not-a-pipeline", "time,level", 1, write("log", "time,level\n2031-03-04T00:00:00Z,3.2\n")],
-  ] as const)("%s: %s", (code, says, line, path) => {
+  ] as const;
+
+  test("and every mistake that the loader knows is provoked in these tests", () => {
+    const sources = readdirSync(SOURCES).filter((name) => !name.startsWith("plan"));
+    const codes = sources.flatMap((name) => {
+      const text = readFileSync(new URL(name, SOURCES), "utf8");
+      return [...text.matchAll(/code: "([a-z0-9-]+)"|fileProblem\(\s*shownName,\s*"([a-z0-9-]+)"/g)];
+    });
+    const known = new Set(codes.map((found) => found[1] ?? found[2]!));
+    expect(known.size).toBeGreaterThan(30);
+    const provoked = new Set<string>([...MISTAKES, ...cases.map(([code]) => ({ code }))].map((c) => c.code));
+    provoked.add("more-mistakes");
+    expect([...known].filter((code) => code !== "custom" && !provoked.has(code))).toEqual([]);
+  });
+
+  test.each(cases)("%s: %s", (code, says, line, path) => {
     let found: readonly Diagnostic[] = [];
     try {
       loadPipeline(path, "shown.yaml", FAKE_STAGES);
