@@ -1,5 +1,5 @@
 import type { Cells } from "./cells.ts";
-import type { FoundLayout } from "./layout.ts";
+import type { Columns } from "./layout.ts";
 
 /**
  * Whether the last line of a log, which has all its cells but no line end, is certain to be whole. A number that
@@ -10,13 +10,13 @@ export function lastCellIsWhole(
   cells: readonly string[],
   quoteCloses: boolean,
   before: readonly Cells[],
-  layout: FoundLayout,
+  columns: Columns,
 ): boolean {
   const at = cells.length - 1;
   const cell = cells[at]!;
   if (quoteCloses) return true;
-  if (at === layout.timeIndex) return /(?:[Zz]|[+-]\d\d:\d\d)$/.test(cell);
-  if (!layout.channelIndexes.includes(at)) return true;
+  if (columns.timeIndexes.includes(at)) return /(?:[Zz]|[+-]\d\d:\d\d)$/.test(cell);
+  if (!columns.channelIndexes.includes(at)) return true;
   const decimals = decimalsOf(cell);
   if (decimals < 1 || before.length < LEAST_ROWS) return false;
   return before.every((row) => row !== null && decimalsOf(row[at] ?? "") === decimals);

@@ -9,12 +9,17 @@ export interface Place {
 /** A log whose rows cannot be read; the other logs are read all the same. */
 export class LogProblem extends Error {
   readonly diagnostic: Diagnostic;
+  /** Time forms between which the log does not decide. */
+  forms?: readonly string[];
   constructor(diagnostic: Diagnostic) {
     super(diagnostic.problem);
     this.name = "LogProblem";
     this.diagnostic = diagnostic;
   }
 }
+
+/** Another log of the same series may answer this one. */
+export const DATE_ORDER_UNCLEAR = "date-order-unclear";
 
 type Parts = Partial<Pick<Diagnostic, "given" | "allowed" | "todo" | "severity"> & Place>;
 
@@ -98,12 +103,32 @@ export const logProblems = {
       todo: "add time: zone to the pipeline",
     }),
 
-  timesUnreadable: (file: string, cell: string, line: number, form: string) =>
+  timesUnreadable: (file: string, cell: string, line: number, form: string, looksLike: string | undefined) =>
     problem(file, "no-readable-time", `no time in this log reads as ${form}`, {
       line,
       column: 1,
       given: quoted(cell),
+      ...(looksLike === undefined ? {} : { allowed: `the cells look like ${looksLike}` }),
       todo: "set time: form in the pipeline to the form that these times are written in",
+    }),
+
+  dateOrderUnclear: (file: string, cell: string, forms: readonly string[], line: number) => {
+    const asked = problem(file, DATE_ORDER_UNCLEAR, "it is not certain which part of the date is the day", {
+      line,
+      column: 1,
+      given: quoted(cell),
+      allowed: forms.join("; or "),
+      todo: "set time: form in the pipeline to the one that is meant",
+    });
+    asked.forms = forms;
+    return asked;
+  },
+
+  timeSetting: (file: string, setting: string, why: string, form: string) =>
+    problem(file, `time-${setting}-needed`, why, {
+      given: `time: form ${quoted(form)}`,
+      allowed: TIME_SETTINGS[setting] ?? "",
+      todo: `set time: ${setting} in the pipeline`,
     }),
 
   decimalSignUnclear: (file: string, cell: string, line: number) =>
@@ -115,6 +140,29 @@ export const logProblems = {
       todo: "add layout: decimal-sign to the pipeline",
     }),
 
+  suspectCode: (file: string, column: string, value: number, count: number, line: number): Diagnostic =>
+    problem(
+      file,
+      "suspect-missing-code",
+      `${value} in ${quoted(column)} looks like a code for a missing value`,
+      {
+        severity: "warning",
+        line,
+        column: 1,
+        given: `${count} ${count === 1 ? "cell" : "cells"}, read as values`,
+        todo: "add it to missing in the pipeline, unless it was measured",
+      },
+    ).diagnostic,
+
+  manySetAside: (file: string, read: number, reasons: string, line: number): Diagnostic =>
+    problem(file, "many-rows-set-aside", "more than half of the rows of this log were set aside", {
+      severity: "warning",
+      line,
+      column: 1,
+      given: `${read} rows, ${reasons}`,
+      todo: "compare the first of these rows with time, channels and layout in the pipeline",
+    }).diagnostic,
+
   noUsableRows: (file: string, reasons: string, line: number) =>
     problem(file, "no-usable-rows", "every row of this log was set aside", {
       line,
@@ -122,6 +170,14 @@ export const logProblems = {
       given: reasons,
       todo: "compare the first rows with time, channels and layout in the pipeline",
     }),
+};
+
+const TIME_SETTINGS: Record<string, string> = {
+  form: "iso-8601, unix-s, unix-ms, unix-us, unix-ns, elapsed-s and so on, or a Unicode date pattern",
+  zone: "an IANA zone name such as Europe/Lisbon, or a fixed offset such as +01:00",
+  date: "the date of the first row, such as 2031-03-04",
+  start: "an ISO 8601 time with offset, such as 2031-03-04T00:00:00Z",
+  rollover: "a whole number, such as 4294967296",
 };
 
 function namesShown(names: readonly string[]): string {

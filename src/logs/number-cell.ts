@@ -2,7 +2,8 @@ const ZERO = 48;
 const NINE = 57;
 
 /**
- * Reads a decimal number as people and loggers write it: sign, digits with at most one decimal sign, exponent.
+ * Reads a decimal number as people and loggers write it: sign, digits with at most one decimal sign, exponent
+ * (with E, or with D as Fortran writes it).
  * Everything else that a programming language might take for a number (0x1F, 12abc, 1_000, true, a blank,
  * Infinity) is not one, nor is a number too large for float64.
  * @param decimalSign  "." or ","
@@ -23,16 +24,19 @@ export function readNumber(cell: string, decimalSign: "." | ","): number {
     code = cell.charCodeAt(++at);
   }
   if (digits === 0) return Number.NaN;
+  let fortran = -1;
   if (at < length) {
-    if (code !== 69 && code !== 101) return Number.NaN;
+    if (code === 68 || code === 100) fortran = at;
+    else if (code !== 69 && code !== 101) return Number.NaN;
     code = cell.charCodeAt(++at);
     if (code === 43 || code === 45) code = cell.charCodeAt(++at);
     const from = at;
     while (code >= ZERO && code <= NINE) code = cell.charCodeAt(++at);
     if (at === from || at < length) return Number.NaN;
   }
-  const value = Number(
-    decimalSign === "," && point >= 0 ? `${cell.slice(0, point)}.${cell.slice(point + 1)}` : cell,
-  );
+  let text = cell;
+  if (decimalSign === "," && point >= 0) text = `${cell.slice(0, point)}.${cell.slice(point + 1)}`;
+  if (fortran >= 0) text = `${text.slice(0, fortran)}e${text.slice(fortran + 1)}`;
+  const value = Number(text);
   return Number.isFinite(value) ? value : Number.NaN;
 }

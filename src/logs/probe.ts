@@ -1,184 +1,191 @@
-import { type ByteSource, isGzip, unpacked } from "./byte-source.ts";
+import type { ByteSource } from "./byte-source.ts";
 import { cellsOf } from "./cells.ts";
-import { type FoundLayout, findLayout } from "./layout.ts";
+import { type FoundForm, findTimeForm } from "./find-time-form.ts";
+import { type LogHead, readHead } from "./head.ts";
+import { type Columns, findColumns, findNames, type NamesLine, timeText } from "./layout.ts";
 import { logProblems } from "./log-problems.ts";
 import { MissingCodes } from "./missing-codes.ts";
+import { countNoteRows, type SampleRow } from "./note-rows.ts";
+import { findNumberFormat, type NumberFormat } from "./number-format.ts";
 import { RecordSplitter } from "./record-splitter.ts";
-import type { LogFile, ReadRequest } from "./rows.ts";
-import { type Encoding, encodingKnown, findEncoding, repairUtf8, Utf8Stream } from "./text-decoding.ts";
+import type { LogFile, ReadRequest, TimeForm } from "./rows.ts";
+import type { Encoding } from "./text-decoding.ts";
 import { TimeReader } from "./time-reader.ts";
 
-/** Text looked at to find the layout. */
+/** Text looked at to find the layout, and to find out whether 03/04 is in March or in April. */
 const HEAD_BYTES = 1 << 16;
+const LONG_HEAD_BYTES = 1 << 24;
+/** Rows whose numbers are looked at. */
+const NUMBER_ROWS = 200;
 
 /** What is known of a log before its rows are read. */
 export interface ProbedLog {
   readonly file: LogFile;
-  readonly layout: FoundLayout;
   readonly encoding: Encoding;
+  readonly separator: string;
+  readonly columns: Columns;
+  readonly numbers: NumberFormat;
+  readonly namesLine: number;
+  readonly dataFromLine: number;
+  readonly form: TimeForm;
   /** Earliest time among the first rows; -Infinity when none of them has a readable time. */
   readonly firstTime_us: number;
   readonly found: Record<string, string>;
 }
 
-/** First bytes of files that are often given a .csv name by mistake. */
-const SIGNATURES: readonly (readonly [string, string])[] = [
-  ["\x89PNG", "a PNG picture"],
-  ["\xff\xd8\xff", "a JPEG picture"],
-  ["GIF8", "a GIF picture"],
-  ["%PDF", "a PDF document"],
-  ["PK\x03\x04", "a ZIP archive or a spreadsheet workbook"],
-  ["\xd0\xcf\x11\xe0", "an old office document"],
-  ["BZh", "a bzip2 archive"],
-  ["\x28\xb5\x2f\xfd", "a Zstandard archive"],
-  ["\xfd7zXZ", "an XZ archive"],
-  ["7z\xbc\xaf", "a 7z archive"],
-  ["\x89HDF", "an HDF5 file"],
-  ["CDF\x01", "a netCDF file"],
-  ["CDF\x02", "a netCDF file"],
-  ["SQLite format 3", "an SQLite database"],
-];
+/** Names of the signs, for the account. */
+const SIGNS: Record<string, string> = {
+  ",": "comma",
+  ".": "point",
+  ";": "semicolon",
+  "\t": "tab",
+  " ": "blank",
+};
 
 /**
- * Looks at the first lines of a log.
- * @throws LogProblem when the log cannot be read at all
+ * Looks at the first lines of a log and finds its layout, from them and from what the pipeline says.
+ * @throws LogProblem when the log cannot be read, or the layout is not certain
  */
 export async function probeLog(file: LogFile, request: ReadRequest, source: ByteSource): Promise<ProbedLog> {
-  const { head, whole, packed } = await readHead(file, source);
-  if (head.length === 0) throw logProblems.empty(file.name);
-  const encoding = findEncoding(head, request.layout.encoding);
-  if (!encodingKnown(encoding.label)) throw logProblems.unknownEncoding(file.name, encoding.label);
-  const decoder = new Utf8Stream(encoding.label);
-  const bytes = Buffer.concat([decoder.push(head), whole ? decoder.end() : new Uint8Array(0)]);
-  checkIsText(file.name, head, bytes);
-  const text = wholeLines(Buffer.from(repairUtf8(bytes)).toString(), whole);
-  const times = new TimeReader(request.time.form, request.time.zone);
+  const { layout } = request;
+  const head = await readHead(file, source, layout.encoding, HEAD_BYTES);
+  const names = findNames(file.name, head.text.split(/\r\n|\n|\r/), request);
+  const columns = findColumns(file.name, names, request);
+  let rows = sampleRows(head, names.separator, layout.dataFromLine ?? names.after);
+  if (rows.length === 0 && head.whole) throw logProblems.noRows(file.name, names.line);
+  let form = request.time.form;
+  if (form === undefined) {
+    let found = findTimeForm(timeCells(rows, columns), request.time);
+    if (found.kind === "unclear" && !head.whole) {
+      const long = await readHead(file, source, layout.encoding, LONG_HEAD_BYTES);
+      const more = sampleRows(long, names.separator, layout.dataFromLine ?? names.after);
+      found = findTimeForm(timeCells(more, columns), request.time, found.forms);
+    }
+    form = foundForm(file.name, found, rows[0]!.line);
+  }
   const missing = new MissingCodes(request.missing);
-  const layout = findLayout(file.name, text, request, times, missing);
-  const firstTime_us = findFirstTime(file.name, text, whole, layout, request, times);
-  const found: Record<string, string> = {
-    ...(packed ? { compression: "gzip" } : {}),
-    encoding: encoding.found,
-    ...layout.found,
-    time: timeInWords(request),
-  };
-  return { file, layout, encoding, firstTime_us, found };
-}
-
-async function readHead(
-  file: LogFile,
-  source: ByteSource,
-): Promise<{ head: Buffer; whole: boolean; packed: boolean }> {
-  const parts: Uint8Array[] = [];
-  let length = 0;
-  const first: number[] = [];
-  const raw = source(file);
-  async function* watched(): AsyncGenerator<Uint8Array> {
-    for await (const chunk of raw) {
-      for (let i = 0; i < chunk.length && first.length < 2; i++) first.push(chunk[i]!);
-      yield chunk;
-    }
-  }
-  let whole = true;
-  try {
-    for await (const chunk of unpacked(watched())) {
-      parts.push(chunk);
-      length += chunk.length;
-      if (length >= HEAD_BYTES) {
-        whole = false;
-        break;
-      }
-    }
-  } catch (error) {
-    // Damage beyond the first lines is met again, and reported, when the rows are read.
-    if (length === 0) {
-      if (isGzip(Uint8Array.from(first))) throw logProblems.damaged(file.name, messageOf(error), 0);
-      throw logProblems.cannotOpen(file.name, messageOf(error));
-    }
-    whole = false;
-  }
-  const head = Buffer.concat(parts, length);
+  const noteRows =
+    layout.dataFromLine === undefined
+      ? countNoteRows(rows, columns, timeReader(file.name, form, request), missing)
+      : 0;
+  const notes = rows.slice(0, noteRows);
+  rows = rows.slice(noteRows);
+  const numbers = findNumberFormat(
+    file.name,
+    columns.channelIndexes.map((c) =>
+      rows
+        .slice(0, NUMBER_ROWS)
+        .flatMap(({ line, cells }) => (cells[c] === undefined ? [] : [{ line, cell: cells[c] }])),
+    ),
+    layout,
+    missing,
+  );
   return {
-    head: head.subarray(0, HEAD_BYTES),
-    whole: whole && length <= HEAD_BYTES,
-    packed: isGzip(Uint8Array.from(first)),
+    file,
+    encoding: head.encoding,
+    separator: names.separator,
+    columns,
+    numbers,
+    namesLine: names.line,
+    dataFromLine: layout.dataFromLine ?? (notes.length > 0 ? notes.at(-1)!.line + 1 : names.after),
+    form,
+    firstTime_us: firstTime(file.name, rows, columns, form, request),
+    found: inWords(head, names, notes, numbers, form, request),
   };
 }
 
-/** The message of a system error without the path of this machine. */
-export function messageOf(error: unknown): string {
-  const text = error instanceof Error ? error.message : String(error);
-  return text.replace(/, \w+ '.*'$/, "");
+/** A reader for the times of one log. @throws LogProblem when the settings lack what the form needs */
+export function timeReader(name: string, form: TimeForm, request: ReadRequest): TimeReader {
+  const reader = TimeReader.make(form, request.time);
+  if (!(reader instanceof TimeReader)) throw logProblems.timeSetting(name, reader.setting, reader.why, form);
+  return reader;
 }
 
-function checkIsText(name: string, head: Buffer, decoded: Buffer): void {
-  const start = head.subarray(0, 16).toString("latin1");
-  const known = SIGNATURES.find(([signature]) => start.startsWith(signature));
-  if (known !== undefined) throw logProblems.notText(name, known[1]);
-  let control = 0;
-  let nul = 0;
-  for (const byte of decoded) {
-    if (byte === 0) nul++;
-    else if (byte < 32 && byte !== 9 && byte !== 10 && byte !== 13 && byte !== 12 && byte !== 26) control++;
-  }
-  const rest = decoded.length - nul;
-  if (rest === 0 && nul > 0) throw logProblems.notText(name, "nothing but zero bytes");
-  if (control > 0.02 * rest) throw logProblems.notText(name, "binary data");
-}
-
-/** Leaves out a last line that was cut off by the limit of the head. */
-function wholeLines(text: string, whole: boolean): string {
-  if (whole) return text;
-  const end = Math.max(text.lastIndexOf("\n"), text.lastIndexOf("\r"));
-  return end < 0 ? text : text.slice(0, end + 1);
-}
-
-function findFirstTime(
-  name: string,
-  text: string,
-  whole: boolean,
-  layout: FoundLayout,
-  request: ReadRequest,
-  times: TimeReader,
-): number {
-  let first = Number.POSITIVE_INFINITY;
-  let rows = 0;
-  let unreadable: { cell: string; line: number } | undefined;
-  let withoutOffset = false;
+function sampleRows(head: LogHead, separator: string, fromLine: number): SampleRow[] {
+  const rows: SampleRow[] = [];
   const splitter = new RecordSplitter({
-    separator: layout.separator,
+    separator,
     comments: true,
-    fromLine: layout.dataFromLine,
-    onRefused: () => rows++,
+    fromLine,
+    onRefused: (line) => rows.push({ line, cells: [] }),
     onComment: () => {},
   });
-  splitter.push(Buffer.from(text));
-  const batch = splitter.end();
-  if (batch !== null) {
-    cellsOf(batch, layout.separator).forEach((cells, i) => {
-      rows++;
-      const cell = cells?.[layout.timeIndex];
-      if (cell === undefined) return;
-      const time = times.time(cell);
-      if (!Number.isNaN(time)) first = Math.min(first, time);
-      else if (cell !== request.time.column) {
-        if (times.problem === "time-without-offset" && !withoutOffset) {
-          withoutOffset = true;
-          unreadable = undefined;
-        }
-        unreadable ??= { cell, line: batch.lines[i]! };
-      }
-    });
-  }
-  if (rows === 0 && whole) throw logProblems.noRows(name, layout.namesLine);
-  if (Number.isFinite(first)) return first;
-  if (unreadable !== undefined) {
-    if (withoutOffset) throw logProblems.zoneNeeded(name, unreadable.cell, unreadable.line);
-    throw logProblems.timesUnreadable(name, unreadable.cell, unreadable.line, request.time.form);
-  }
-  return Number.NEGATIVE_INFINITY;
+  for (const batch of [splitter.push(Buffer.from(head.text)), splitter.end()])
+    if (batch !== null)
+      cellsOf(batch, separator).forEach((cells, i) => {
+        rows.push({ line: batch.lines[i]!, cells: cells ?? [] });
+      });
+  return rows.sort((a, b) => a.line - b.line);
 }
 
-function timeInWords({ time }: ReadRequest): string {
-  return `${time.form}${time.zone === undefined ? "" : `, ${time.zone} where a cell carries no offset`}`;
+function timeCells(rows: readonly SampleRow[], { timeIndexes, names }: Columns): string[] {
+  const again = timeIndexes.map((i) => names[i]).join(" ");
+  return rows.flatMap(({ cells }) => {
+    const text = timeText(cells, timeIndexes);
+    return text === undefined || text === again ? [] : [text];
+  });
+}
+
+function foundForm(name: string, found: FoundForm, line: number): TimeForm {
+  if (found.kind === "found") return found.form;
+  if (found.kind === "unclear") throw logProblems.dateOrderUnclear(name, found.cell, found.forms, line);
+  if (found.kind === "no-date")
+    throw logProblems.timeSetting(name, "date", "the cells hold the time of day without a date", found.form);
+  throw logProblems.timesUnreadable(name, found.cell, line, "a form that is known", undefined);
+}
+
+function firstTime(
+  name: string,
+  rows: readonly SampleRow[],
+  columns: Columns,
+  form: TimeForm,
+  request: ReadRequest,
+): number {
+  const times = timeReader(name, form, request);
+  let first = Number.POSITIVE_INFINITY;
+  let unreadable: { cell: string; line: number } | undefined;
+  let local: { cell: string; line: number } | undefined;
+  for (const { line, cells } of rows) {
+    const cell = timeText(cells, columns.timeIndexes);
+    if (cell === undefined) continue;
+    const time = times.time(cell);
+    if (!Number.isNaN(time)) first = Math.min(first, time);
+    else if (times.problem === "time-without-offset") local ??= { cell, line };
+    else unreadable ??= { cell, line };
+  }
+  if (Number.isFinite(first)) return first;
+  if (local !== undefined) throw logProblems.zoneNeeded(name, local.cell, local.line);
+  if (unreadable === undefined) return Number.NEGATIVE_INFINITY;
+  const found = findTimeForm(timeCells(rows, columns), request.time);
+  const looksLike = found.kind === "found" ? found.form : undefined;
+  throw logProblems.timesUnreadable(name, unreadable.cell, unreadable.line, form, looksLike);
+}
+
+function inWords(
+  head: LogHead,
+  names: NamesLine,
+  notes: readonly SampleRow[],
+  numbers: NumberFormat,
+  form: TimeForm,
+  request: ReadRequest,
+): Record<string, string> {
+  const { layout, time, channels } = request;
+  const set = (given: unknown): string => (given === undefined ? "" : ", as set in the pipeline");
+  const found: Record<string, string> = {};
+  if (head.packed) found["compression"] = "gzip";
+  found["encoding"] = head.encoding.found;
+  found["separator"] = (SIGNS[names.separator] ?? JSON.stringify(names.separator)) + set(layout.separator);
+  found["decimal sign"] = SIGNS[numbers.decimalSign] + set(layout.decimalSign);
+  if (numbers.thousandsSign !== null)
+    found["thousands sign"] =
+      (SIGNS[numbers.thousandsSign] ?? JSON.stringify(numbers.thousandsSign)) + set(layout.thousandsSign);
+  numbers.suffixes.forEach((suffix, c) => {
+    if (suffix !== null) found[`unit in the cells of ${channels[c]!.name}`] = suffix;
+  });
+  found["names line"] = `line ${names.line}${set(layout.namesLine)}`;
+  if (notes.length > 0)
+    found["rows between names and data"] = `${notes.map((row) => row.line).join(", ")} (units or notes)`;
+  found["time"] = time.form === undefined ? `${form}, found from the cells` : form + set(time.form);
+  if (time.zone !== undefined) found["zone"] = `${time.zone} where a cell carries no offset`;
+  return found;
 }

@@ -1,11 +1,11 @@
 import type { Diagnostic } from "../diagnostics.ts";
 import { type ByteSource, digestOf, fromDisk } from "./byte-source.ts";
-import { LogProblem, logProblems } from "./log-problems.ts";
+import { DATE_ORDER_UNCLEAR, LogProblem } from "./log-problems.ts";
 import { LogRows } from "./log-rows.ts";
 import { type MergeInput, mergeLogs } from "./merge-logs.ts";
-import { messageOf, type ProbedLog, probeLog } from "./probe.ts";
+import { type ProbedLog, probeLog } from "./probe.ts";
 import { newRowAccount } from "./row-account.ts";
-import type { FileAccount, LogReading, ReadRequest, RowAccount, RowBlock } from "./rows.ts";
+import type { FileAccount, LogReading, ReadRequest, RowBlock } from "./rows.ts";
 
 /**
  * Reads the logs of one series as rows in strict order of time. The files are read in the order of their first
@@ -40,29 +40,54 @@ class SeriesReading {
   async *blocks(): AsyncGenerator<RowBlock> {
     const { request } = this;
     const inputs: MergeInput[] = [];
-    for (const [index, file] of request.files.entries()) {
-      let probed: ProbedLog;
-      try {
-        probed = await probeLog(file, request, this.source);
-      } catch (error) {
-        await this.refuse(index, error);
-        continue;
-      }
-      const rows = new LogRows(probed, request, this.source);
+    for (const { index, log } of await this.probeAll()) {
+      const rows = new LogRows(log, request, this.source);
       this.byFile.set(index, () => rows.account());
-      inputs.push({ rows, notBefore_us: probed.firstTime_us - request.lateBy_us });
+      inputs.push({ rows, notBefore_us: log.firstTime_us - request.lateBy_us });
     }
     // Array sort is stable: logs with the same first time stay in the order of the request.
     inputs.sort((a, b) => compare(a.notBefore_us, b.notBefore_us));
     yield* mergeLogs(inputs, request.channels.length);
-    for (const { rows } of inputs) this.verdict(rows);
+    for (const { rows } of inputs) this.diagnostics.push(...rows.diagnostics());
+  }
+
+  private async probeAll(): Promise<{ index: number; log: ProbedLog }[]> {
+    const probed: { index: number; log: ProbedLog }[] = [];
+    const unclear: { index: number; problem: LogProblem }[] = [];
+    for (const index of this.request.files.keys()) {
+      try {
+        probed.push({ index, log: await this.probe(index, this.request) });
+      } catch (error) {
+        if (error instanceof LogProblem && error.diagnostic.code === DATE_ORDER_UNCLEAR)
+          unclear.push({ index, problem: error });
+        else await this.refuse(index, error);
+      }
+    }
+    // A short log may hold no day after the 12th; the other logs of its logger then say how it writes dates.
+    const forms = new Set(probed.map(({ log }) => log.form));
+    const [form] = forms;
+    for (const { index, problem } of unclear) {
+      try {
+        if (forms.size !== 1 || !(problem.forms ?? []).includes(form!)) throw problem;
+        const log = await this.probe(index, { ...this.request, time: { ...this.request.time, form: form! } });
+        const found = { ...log.found, time: `${form}, as in the other logs of the series` };
+        probed.push({ index, log: { ...log, found } });
+      } catch (error) {
+        await this.refuse(index, error);
+      }
+    }
+    return probed.sort((a, b) => a.index - b.index);
+  }
+
+  private probe(index: number, request: ReadRequest): Promise<ProbedLog> {
+    return probeLog(request.files[index]!, request, this.source);
   }
 
   /** Notes why a log cannot be read; its digest is kept all the same, since it was an input. */
   private async refuse(index: number, error: unknown): Promise<void> {
+    if (!(error instanceof LogProblem)) throw error;
+    const { diagnostic } = error;
     const file = this.request.files[index]!;
-    const { diagnostic } =
-      error instanceof LogProblem ? error : logProblems.cannotOpen(file.name, messageOf(error));
     this.diagnostics.push(diagnostic);
     try {
       const digest = await digestOf(this.source(file));
@@ -73,26 +98,6 @@ class SeriesReading {
       // What cannot be opened has no digest; the diagnostic says so.
     }
   }
-
-  private verdict(log: LogRows): void {
-    if (log.problem !== null) this.diagnostics.push(log.problem.diagnostic);
-    const { rows } = log;
-    if (rows.used + rows.merged > 0 || log.problem !== null) return;
-    const { file } = log.account();
-    if (rows.read === 0) {
-      this.diagnostics.push(logProblems.noRows(file, log.namesLine).diagnostic);
-      return;
-    }
-    const first = [...rows.setAside.values()].flatMap((s) => s.firstLines);
-    this.diagnostics.push(
-      logProblems.noUsableRows(file, reasonsInWords(rows), Math.min(...first, Number.MAX_SAFE_INTEGER))
-        .diagnostic,
-    );
-  }
-}
-
-function reasonsInWords(rows: RowAccount): string {
-  return [...rows.setAside.entries()].map(([reason, { count }]) => `${count} ${reason}`).join(", ");
 }
 
 function compare(a: number, b: number): number {

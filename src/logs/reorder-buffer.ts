@@ -38,11 +38,8 @@ export class ReorderBuffer {
     this.columns = Array.from({ length: channels }, () => new Float64Array(2 * LEAST_ROWS));
   }
 
+  /** @param time  not more than `lateBy_us` behind the newest one */
   add(time: number, line: number, values: Float64Array): void {
-    if (time < this.newest_us - this.lateBy_us) {
-      setAside(this.account, "late", line);
-      return;
-    }
     if (this.count === this.times.length) this.grow();
     const at = this.count++;
     this.times[at] = time;

@@ -26,12 +26,36 @@ export interface ChannelColumn {
   readonly column: string;
 }
 
-/** How the time cells are written. More forms come with more clocks. */
+/**
+ * How the time cells are written: one of the names, or a Unicode date pattern such as `dd/MM/yyyy HH:mm:ss.SSS`
+ * (with `seconds-of-day` and `decimal-day` as further words). `elapsed-…` counts from `TimeSettings.start`;
+ * `serial-day-1900` and `serial-day-1904` are the days of spreadsheets.
+ */
 export type TimeForm = "iso-8601" | "unix-s" | "unix-ms" | "unix-us" | "unix-ns" | (string & {});
+
+/** How the clock of a log is read. */
+export interface TimeSettings {
+  /** One column, or several whose cells are put together with a blank between them: [Date, Time]. */
+  readonly column: string | readonly string[];
+  /** Found from the cells when left out; where that is not certain, the reader asks. */
+  readonly form?: TimeForm;
+  /** IANA name or a fixed offset (+01:00) of cells that carry no offset. */
+  readonly zone?: string;
+  /** First of the hundred years that two-digit years stand for; 1970 when left out. */
+  readonly pivot?: number;
+  /** Date of the first row, yyyy-MM-dd, for cells that hold the time of day only. */
+  readonly date?: string;
+  /** ISO 8601 time with offset at which an elapsed count is zero. */
+  readonly start?: string;
+  /** The count starts again from zero at this value, in its own unit. */
+  readonly rollover?: number;
+}
 
 export interface LogLayout {
   readonly separator?: string;
   readonly decimalSign?: "." | ",";
+  /** Sign between groups of three digits; found from the file when left out. */
+  readonly thousandsSign?: string;
   readonly encoding?: string;
   /** 1-based physical line that holds the column names. */
   readonly namesLine?: number;
@@ -42,7 +66,7 @@ export interface LogLayout {
 export interface ReadRequest {
   readonly files: readonly LogFile[];
   readonly channels: readonly ChannelColumn[];
-  readonly time: { readonly column: string; readonly form: TimeForm; readonly zone?: string };
+  readonly time: TimeSettings;
   /** Codes for a missing value; a numeric code matches in every spelling (-9999, -9999.0, -9.999e3). */
   readonly missing: readonly string[];
   readonly layout: LogLayout;

@@ -2,6 +2,7 @@ import type { Diagnostic } from "../../src/diagnostics.ts";
 import type { ByteSource } from "../../src/logs/byte-source.ts";
 import { readLogs } from "../../src/logs/read-logs.ts";
 import type { FileAccount, ReadRequest, RowAccount } from "../../src/logs/rows.ts";
+import { type ClockSettings, TimeReader } from "../../src/logs/time-reader.ts";
 
 export interface ReadResult {
   /** Time in microseconds, then one value a channel. */
@@ -58,3 +59,9 @@ export function imbalance(rows: RowAccount): number {
 }
 
 export const iso = (time_us: number): string => new Date(time_us / 1000).toISOString();
+
+export function readerOf(form: string, settings: ClockSettings = {}): TimeReader {
+  const reader = TimeReader.make(form, settings);
+  if (!(reader instanceof TimeReader)) throw new Error(reader.why);
+  return reader;
+}

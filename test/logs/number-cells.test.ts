@@ -5,8 +5,21 @@ import { readNumber } from "../../src/logs/number-cell.ts";
 
 describe("number cells", () => {
   it("reads the spellings that loggers use", () => {
-    const cells = ["1.5E+03", "-2e-4", "+3.25e0", "1E5", ".5", "7.", "-0", "0012", "9.97e36", "1e308"];
-    const values = [1500, -0.0002, 3.25, 100_000, 0.5, 7, -0, 12, 9.97e36, 1e308];
+    const cells = [
+      "1.5E+03",
+      "-2e-4",
+      "+3.25e0",
+      "1E5",
+      "1d3",
+      "-2.5D-02",
+      ".5",
+      "7.",
+      "-0",
+      "0012",
+      "9.97e36",
+      "1e308",
+    ];
+    const values = [1500, -0.0002, 3.25, 100_000, 1000, -0.025, 0.5, 7, -0, 12, 9.97e36, 1e308];
     expect(cells.map((cell) => readNumber(cell, "."))).toEqual(values);
   });
 
@@ -35,10 +48,12 @@ describe("number cells", () => {
       "NaN",
       "1e309",
       "-1e309",
-      "1d3",
+
       "1.2.3",
       "1,5",
       "5n",
+      "1d",
+      "d5",
       "١٢",
       "1e5.0",
       "1\t",

@@ -1,8 +1,8 @@
 import { readFileSync } from "node:fs";
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
-import { TimeReader } from "../../src/logs/time-reader.ts";
 import { readUnixTime, UNIX_UNITS } from "../../src/logs/unix-time.ts";
+import { readerOf } from "./in-memory.ts";
 
 interface Case {
   id: string;
@@ -21,7 +21,7 @@ function roundedMicros(nanos: bigint): number {
 describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   for (const { id, inputs, expected } of reference.cases.filter((c) => c.inputs.text !== undefined)) {
     it(id, () => {
-      const reader = new TimeReader("iso-8601", undefined);
+      const reader = readerOf("iso-8601");
       const time = reader.time(inputs.text!);
       if (expected.action === "reject") {
         expect(time).toBeNaN();
@@ -34,7 +34,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   }
 
   it("counts digits finer than a microsecond, and rounds them half up", () => {
-    const reader = new TimeReader("iso-8601", undefined);
+    const reader = readerOf("iso-8601");
     expect(reader.time("2024-06-30T12:00:00.1234565Z") % 1e6).toBe(123_457);
     expect(reader.time("2024-06-30T12:00:00.1234564999Z") % 1e6).toBe(123_456);
     expect(reader.time("2024-06-30T12:00:00.123456000Z") % 1e6).toBe(123_456);
@@ -43,7 +43,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   });
 
   it("takes a leap second only at the end of a UTC day", () => {
-    const reader = new TimeReader("iso-8601", "UTC");
+    const reader = readerOf("iso-8601", { zone: "UTC" });
     expect(reader.time("2016-12-31T23:59:60Z")).toBe(Date.UTC(2017, 0, 1) * 1000);
     expect(reader.time("2016-12-31T23:59:60")).toBe(Date.UTC(2017, 0, 1) * 1000);
     expect(reader.leapSeconds).toBe(2);
@@ -52,7 +52,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   });
 
   it("reads week dates", () => {
-    const reader = new TimeReader("iso-8601", "UTC");
+    const reader = readerOf("iso-8601", { zone: "UTC" });
     // ISO 8601:2004 4.1.4.2: 1985-W15-5 is 12 April 1985. 2020 has a week 53, 2021 has not.
     expect(reader.time("1985-W15-5")).toBe(Date.UTC(1985, 3, 12) * 1000);
     expect(reader.time("1985W155T101530Z")).toBe(Date.UTC(1985, 3, 12, 10, 15, 30) * 1000);
@@ -62,7 +62,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   });
 
   it("refuses what only looks like a time", () => {
-    const reader = new TimeReader("iso-8601", "UTC");
+    const reader = readerOf("iso-8601", { zone: "UTC" });
     for (const cell of [
       "",
       "2024",
@@ -87,7 +87,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   });
 
   it("agrees with Date for every day and offset (property)", () => {
-    const reader = new TimeReader("iso-8601", undefined);
+    const reader = readerOf("iso-8601");
     fc.assert(
       fc.property(
         fc.integer({ min: -62_135_596_800_000, max: 9_007_199_254_800 }),
@@ -108,7 +108,7 @@ describe("ISO 8601 and RFC 3339 times (reference 21)", () => {
   });
 
   it("sets times aside that float64 cannot hold to the microsecond", () => {
-    const reader = new TimeReader("iso-8601", "UTC");
+    const reader = readerOf("iso-8601", { zone: "UTC" });
     expect(reader.time("2255-06-05T00:00:00Z")).toBe(Date.UTC(2255, 5, 5) * 1000);
     expect(reader.time("2256-01-01T00:00:00Z")).toBeNaN();
     expect(reader.problem).toBe("time-out-of-range");
@@ -149,9 +149,9 @@ describe("Unix times", () => {
   });
 
   it("that do not fit the exact range are set aside", () => {
-    const reader = new TimeReader("unix-s", undefined);
+    const reader = readerOf("unix-s");
     expect(reader.time("1714521600000")).toBeNaN();
     expect(reader.problem).toBe("time-out-of-range");
-    expect(new TimeReader("unix-s", undefined).time("9".repeat(400))).toBeNaN();
+    expect(readerOf("unix-s").time("9".repeat(400))).toBeNaN();
   });
 });
