@@ -1,6 +1,7 @@
 import type { GridBlock } from "../signal/grid-block.ts";
 import { SampleBuffer } from "../signal/sample-buffer.ts";
 import type { IndexRange } from "./index-range.ts";
+import { RemovalStrip } from "./removal-strip.ts";
 import { Extremes, PairSums } from "./sums.ts";
 
 /**
@@ -9,6 +10,8 @@ import { Extremes, PairSums } from "./sums.ts";
  */
 export class Comparison {
   readonly sums = new PairSums();
+  /** When it was removed, on the input's grid. */
+  readonly removal = new RemovalStrip();
   readonly before = new Extremes();
   readonly after = new Extremes();
   private readonly delay: number | null;
@@ -36,7 +39,9 @@ export class Comparison {
       if (delay === null) continue;
       const at = k - delay - waiting.base;
       const x = at >= 0 && at < waiting.length ? waiting.values[at]! : Number.NaN;
-      if (!Number.isNaN(x)) this.sums.add(k, x, y);
+      if (Number.isNaN(x)) continue;
+      this.sums.add(k, x, y);
+      this.removal.add(k - delay, x - y);
     }
     if (delay !== null) waiting.dropBefore(block.first + block.values.length - delay);
   }

@@ -101,6 +101,8 @@ export interface StageAccount {
   enbw_Hz: number | null;
   /** For plotting: |H| in dB at frequencies from 0 to the Nyquist frequency of the stage's input. */
   response: { frequency_Hz: number[]; gain_dB: number[] } | null;
+  /** For plotting: answer to a unit step, by time since the step reached the filter's middle. */
+  step: { time_s: number[]; value: number[] } | null;
   /** Where mains hum and harmonics land when samples are dropped; empty when the rate stays. */
   folds: { frequency_Hz: number; lands_at_Hz: number; gain_dB: number; inverted: boolean }[];
   channels: Record<string, ChannelAccount>;
@@ -122,6 +124,12 @@ export interface ChannelAccount {
   rms_out: number | null;
   rms_removed: number | null;
   variance_removed_pct: number | null;
+  /** Unit squared. */
+  variance_removed: number | null;
+  /** Delay by cross-correlation of input and output, beside the stated one; correlation at its peak. */
+  delay_measured: { delay_s: number; stated_s: number; correlation: number } | null;
+  /** When it was removed: rms per column of time, and the largest single removals. */
+  removal: RemovalAccount | null;
   /** How the removal was measured: sums over samples, or segment spectra where the delay is not whole. */
   basis: "samples" | "segment spectra" | null;
   extremes: {
@@ -129,6 +137,10 @@ export interface ChannelAccount {
     highest_out: Extreme | null;
     lowest_in: Extreme | null;
     lowest_out: Extreme | null;
+    /** Highest before minus highest after: what the peak lost. */
+    height_lost: number | null;
+    /** Lowest after minus lowest before: what the trough lost. */
+    depth_lost: number | null;
   } | null;
   bands: BandAccount[];
   tones: ToneAccount[];
@@ -136,6 +148,15 @@ export interface ChannelAccount {
   /** Samples of the stage's output by the last state that holds, and how often each state holds at all. */
   counts: Record<State, number>;
   holds: Record<State, number>;
+}
+
+export interface RemovalAccount {
+  from: string;
+  column_s: number;
+  /** rms of what was removed in each column; null where nothing could be compared. */
+  rms: (number | null)[];
+  /** The largest removed values, each the largest of its column and farther apart than one column. */
+  events: { time: string; removed: number; times_rms: number }[];
 }
 
 export interface Extreme {
@@ -156,6 +177,8 @@ export interface BandAccount {
   closure: number | null;
   /** Output power expected from the input spectrum and |H|². */
   predicted_out: number | null;
+  /** Whether what was measured lies within the 95 % interval about what was predicted. */
+  as_predicted: boolean | null;
   degrees_of_freedom: number;
   /** What can be said: "removed", "kept", "added", "not resolved" with the 95 % interval counted. */
   finding: string;

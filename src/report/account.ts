@@ -21,8 +21,9 @@ import type {
   TimingAccount,
 } from "./account-format.ts";
 import { CAUTIONS } from "./cautions.ts";
+import { counted } from "./channel-account.ts";
 import { chainDelay, judgeRequirements } from "./requirements.ts";
-import { counted, gridStageAccount, lookAhead, stageAccount, stageDesignAccount } from "./stage-account.ts";
+import { gridStageAccount, lookAhead, stageAccount, stageDesignAccount } from "./stage-account.ts";
 import { verdictOf } from "./verdict.ts";
 
 export const ACCOUNT_FORMAT = "forebay-account/1";

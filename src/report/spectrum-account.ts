@@ -3,6 +3,7 @@ import type { CrossSpectra } from "../engine/cross-spectra.ts";
 import { confidenceFactors, equivalentDegreesOfFreedom } from "../signal/chi-square.ts";
 import { foldedFrequency } from "../signal/fold.ts";
 import { gainAtBins } from "../signal/gain-at-bins.ts";
+import { thirdOctaves } from "../signal/third-octaves.ts";
 import { findTones } from "../signal/tones.ts";
 import { bandPower, type SpectrumPlan } from "../signal/welch.ts";
 import type { ReportSettings } from "../stages/stage.ts";
@@ -52,12 +53,21 @@ export function bandAccounts(
   d: Densities,
   bands: ReportSettings["bands"],
   taps: Float64Array | null,
+  octavesWanted = false,
 ): BandAccount[] {
   const width = d.plan.resolution_Hz;
   const nyquist = d.plan.frequency(d.plan.bins - 1);
   const predicted = taps === null ? null : gainAtBins(taps, d.plan.segment).map((g, k) => g * g * d.xx[k]!);
-  const all = bands.length > 0 ? bands : [{ name: "all", from_Hz: 0, to_Hz: nyquist }];
-  return all
+  const named = bands.length > 0 ? bands : [{ name: "all", from_Hz: 0, to_Hz: nyquist }];
+  // Narrower than two bins, a third of an octave cannot be told from its neighbours.
+  const octaves = octavesWanted
+    ? thirdOctaves(8.7 * width, nyquist).map(({ centre_Hz, from_Hz, to_Hz }) => ({
+        name: `third octave at ${Number(centre_Hz.toPrecision(3))} Hz`,
+        from_Hz,
+        to_Hz,
+      }))
+    : [];
+  return [...named, ...octaves]
     .filter((band) => band.from_Hz < nyquist)
     .map((band) => {
       const to = Math.min(band.to_Hz, nyquist);
@@ -78,6 +88,7 @@ export function bandAccounts(
         cross,
         closure: p_in > 0 ? (p_out + p_removed + cross - p_in) / p_in : null,
         predicted_out: predicted === null ? null : power(predicted),
+        as_predicted: predicted === null ? null : agrees(p_out, power(predicted), freedom),
         degrees_of_freedom: freedom,
         finding: finding(p_in, p_out, p_removed, freedom),
       };
@@ -97,6 +108,12 @@ function finding(p_in: number, p_out: number, p_removed: number, freedom: number
   if (change + half < 0) return "removed";
   if (change - half > 0) return "added";
   return "not resolved";
+}
+
+/** Within the 95 % interval of an estimate with these degrees of freedom about the prediction. */
+function agrees(measured: number, predicted: number, freedom: number): boolean {
+  const { lower, upper } = confidenceFactors(freedom, 0.95);
+  return measured >= predicted / upper - Number.MIN_VALUE && measured <= predicted / lower + Number.MIN_VALUE;
 }
 
 export function toneAccounts(

@@ -1,19 +1,15 @@
 /** What the account says of one stage: its design's figures, and what was measured on each channel. */
 
 import type { AliasMeasure } from "../engine/alias-spectrum.ts";
-import { lagSamples, type StageMeasure } from "../engine/channel-chain.ts";
-import type { StateCounts } from "../engine/counts.ts";
 import type { ChannelResult } from "../engine/run-chain.ts";
-import type { Extremes } from "../engine/sums.ts";
-import { isoTime } from "../outputs/cell-text.ts";
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
 import { filterFigures } from "../signal/filter-figures.ts";
 import { foldedFrequency } from "../signal/fold.ts";
-import { type Grid, intervalSeconds, timeOf } from "../signal/grid.ts";
-import { bandPower } from "../signal/welch.ts";
-import type { AliasAccount, ChannelAccount, Extreme, StageAccount } from "./account-format.ts";
+import { intervalSeconds } from "../signal/grid.ts";
+import type { AliasAccount, ChannelAccount, StageAccount } from "./account-format.ts";
+import { channelAccount, counted, unmeasured } from "./channel-account.ts";
 import { stageGain } from "./requirements.ts";
-import { bandAccounts, decibels, densities, spectrumAccount, toneAccounts } from "./spectrum-account.ts";
+import { decibels } from "./spectrum-account.ts";
 
 const RESPONSE_POINTS = 400;
 const MAINS_Hz = [50, 60];
@@ -63,6 +59,10 @@ export function stageDesignAccount(plan: Plan, planned: PlannedStage): StageAcco
           },
     enbw_Hz: figures === null ? null : figures.noiseBandwidth / step,
     response: figures === null || interval === null ? null : response(planned, interval),
+    step:
+      design.taps === null || design.taps.length < 2
+        ? null
+        : stepAnswer(design.taps, design.delay.samples, step),
     folds: design.keepEvery > 1 && interval !== null ? mainsFolds(plan, planned, interval) : [],
     channels: {},
     alias: design.alias === null ? null : aliasAccount(planned, []),
@@ -162,103 +162,31 @@ export function gridStageAccount(
 const meanGains = (interval_s: number) =>
   [0.05, 0.1, 0.2, 0.3, 0.4, 0.5].map((share) => ({ share, f_Hz: share / interval_s }));
 
-function channelAccount(
-  plan: Plan,
-  planned: PlannedStage,
-  measure: StageMeasure,
-  unit: string,
-): ChannelAccount {
-  const base = { ...unmeasured(unit), ...counted(measure.counts) };
-  const { comparison } = measure;
-  if (comparison === null || plan.report === null) return base;
-  const grid = planned.signalIn.grid!;
-  const outGrid: Grid = planned.design.keepEvery > 1 ? grid : planned.design.grid;
-  const sums = comparison.sums.figures();
-  const d =
-    measure.cross === null || measure.spectra === null
-      ? null
-      : densities(measure.spectra.plan, measure.cross);
-  const { taps } = planned.design;
-  const whole = Math.abs(lagSamples(planned) - Math.round(lagSamples(planned))) < 1e-9;
-  return {
-    ...base,
-    accounted: true,
-    samples: sums?.count ?? 0,
-    mean_in: sums?.meanIn ?? null,
-    mean_out: sums?.meanOut ?? null,
-    rms_in: sums === null ? null : Math.sqrt(sums.varianceIn),
-    rms_out: sums === null ? null : Math.sqrt(sums.varianceOut),
-    rms_removed: sums === null ? spectralRms(d) : Math.sqrt(sums.varianceRemoved),
-    variance_removed_pct:
-      sums === null
-        ? spectralShare(d)
-        : sums.varianceIn > 0
-          ? (100 * sums.varianceRemoved) / sums.varianceIn
-          : 0,
-    basis: sums !== null ? "samples" : d !== null && !whole ? "segment spectra" : null,
-    extremes: {
-      highest_in: extreme(comparison.before, grid, "high"),
-      highest_out: extreme(comparison.after, outGrid, "high"),
-      lowest_in: extreme(comparison.before, grid, "low"),
-      lowest_out: extreme(comparison.after, outGrid, "low"),
-    },
-    bands: d === null ? [] : bandAccounts(d, plan.report.bands, taps),
-    tones: d === null ? [] : toneAccounts(d, taps, planned.design.keepEvery, plan.report.tones),
-    spectrum: d === null ? null : spectrumAccount(d, plan.report.window),
-  };
-}
-
-type Spectral = ReturnType<typeof densities>;
-
-const power = (d: NonNullable<Spectral>, density: Float64Array) =>
-  bandPower(density, d.plan.resolution_Hz, 0, d.plan.frequency(d.plan.bins - 1));
-
-function spectralRms(d: Spectral): number | null {
-  return d === null ? null : Math.sqrt(power(d, d.rr));
-}
-
-function spectralShare(d: Spectral): number | null {
-  if (d === null) return null;
-  const all = power(d, d.xx);
-  return all > 0 ? (100 * power(d, d.rr)) / all : 0;
-}
-
-function unmeasured(unit: string): Omit<ChannelAccount, "counts" | "holds"> {
-  return {
-    unit,
-    accounted: false,
-    samples: 0,
-    mean_in: null,
-    mean_out: null,
-    rms_in: null,
-    rms_out: null,
-    rms_removed: null,
-    variance_removed_pct: null,
-    basis: null,
-    extremes: null,
-    bands: [],
-    tones: [],
-    spectrum: null,
-  };
-}
-
-export function counted(counts: StateCounts): Pick<ChannelAccount, "counts" | "holds"> {
-  return { counts: counts.states(), holds: counts.holds() };
-}
-
-function extreme(found: Extremes, grid: Grid, which: "high" | "low"): Extreme | null {
-  if (!found.any) return null;
-  return which === "high"
-    ? { value: found.high, time: isoTime(timeOf(grid, found.highAt)) }
-    : { value: found.low, time: isoTime(timeOf(grid, found.lowAt)) };
-}
-
 function response(planned: PlannedStage, interval_s: number): StageAccount["response"] {
   const f = Array.from({ length: RESPONSE_POINTS + 1 }, (_, i) => i / (2 * RESPONSE_POINTS));
   return {
     frequency_Hz: f.map((x) => x / interval_s),
     gain_dB: f.map((x) => Math.max(-400, decibels(stageGain(planned, x)))),
   };
+}
+
+/** Running sum of the taps, at no more than some hundred places, with the values around it. */
+function stepAnswer(
+  taps: Float64Array,
+  delay: number,
+  interval_s: number,
+): NonNullable<StageAccount["step"]> {
+  const every = Math.max(1, Math.ceil(taps.length / RESPONSE_POINTS));
+  const time_s: number[] = [];
+  const value: number[] = [];
+  let sum = 0;
+  for (let n = -1; n <= taps.length; n++) {
+    sum += taps[n] ?? 0;
+    if ((n + 1) % every !== 0 && n !== taps.length) continue;
+    time_s.push((n - delay) * interval_s);
+    value.push(sum);
+  }
+  return { time_s, value };
 }
 
 /** Where mains hum and its harmonics land, as far as the stage's input can hold them. */

@@ -1,6 +1,6 @@
 /** `report`: accounts for every stage above it; the data pass unchanged. */
 import type { z } from "zod";
-import { count, frequency, oneOf, record, stageSettings, strictObject } from "../pipeline/kinds.ts";
+import { count, frequency, oneOf, record, stageSettings, strictObject, truth } from "../pipeline/kinds.ts";
 import { intervalSeconds } from "../signal/grid.ts";
 import { passOn } from "../signal/grid-block.ts";
 import { inHertz } from "./parts/frequencies.ts";
@@ -24,6 +24,10 @@ const settings = stageSettings("report", {
     }),
     { about: "Named bands whose power is accounted for before, after and removed." },
   ).optional(),
+  "third-octaves": truth({
+    default: false,
+    about: "Account for one-third octaves too (IEC 61260-1, base-ten centres), from two bins' width up.",
+  }),
   tones: count({ min: 0, max: 50, default: 5, about: "How many of the strongest tones are listed." }),
 });
 type Settings = z.output<typeof settings>;
@@ -68,6 +72,7 @@ function design(s: Settings, signal: Signal, _selected: readonly number[]): Desi
         resolution_Hz: resolution_Hz ?? "by record length",
         window: s.window,
         bands: Object.fromEntries(bands.map((b) => [b.name, { from_Hz: b.from_Hz, to_Hz: b.to_Hz }])),
+        "third-octaves": s["third-octaves"],
         tones: s.tones,
       },
       taps: null,
@@ -78,7 +83,7 @@ function design(s: Settings, signal: Signal, _selected: readonly number[]): Desi
       alias: null,
       notes: {},
       kernel: passOn,
-      report: { resolution_Hz, window: s.window, bands, tones: s.tones },
+      report: { resolution_Hz, window: s.window, bands, tones: s.tones, thirdOctaves: s["third-octaves"] },
     },
   };
 }

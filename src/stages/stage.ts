@@ -142,4 +142,6 @@ export interface ReportSettings {
   readonly window: WindowKind;
   readonly bands: readonly { readonly name: string; readonly from_Hz: number; readonly to_Hz: number }[];
   readonly tones: number;
+  /** Account for one-third octaves too. */
+  readonly thirdOctaves: boolean;
 }

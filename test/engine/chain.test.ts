@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
+import { measuredDelay } from "../../src/report/measured-delay.ts";
 import { chainDelay } from "../../src/report/requirements.ts";
 import { densities } from "../../src/report/spectrum-account.ts";
 import { intervalSeconds, timeSince } from "../../src/signal/grid.ts";
@@ -150,6 +151,25 @@ describe("books", () => {
     const { results } = run(planOf(chain), roughRecord(1500));
     const m = results[0]!.measures[0]!;
     expect(m.comparison!.sums.figures()!.varianceRemoved).toBe(0);
+  });
+
+  it("finds by cross-correlation the delay that is stated", () => {
+    let n = 99;
+    const noise = () => {
+      n = (n * 16807) % 2147483647;
+      return n / 2147483647 - 0.5;
+    };
+    const x = Float64Array.from({ length: 20_000 }, noise);
+    for (const [name, chain] of Object.entries(CHAINS)) {
+      if (chain.some((s) => s.stage === "detrend")) continue;
+      const { results } = run(planOf(chain), evenRows(x, 1_000_000));
+      for (const m of results[0]!.measures) {
+        const delay = m.cross === null ? null : measuredDelay(m.cross);
+        if (delay === null || m.planned.design.taps === null) continue;
+        expect(Math.abs(delay.beyond_samples), name).toBeLessThan(0.02);
+        expect(delay.correlation, name).toBeGreaterThan(0.1);
+      }
+    }
   });
 
   it("counts every sample of every stage in one state", () => {
