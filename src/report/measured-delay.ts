@@ -1,10 +1,14 @@
 /**
- * Delay as the data show it: the place of the highest cross-correlation of input and output, from their
- * averaged cross spectrum, which is aligned by the stated delay already.
+ * Delay as the data show it: the middle of the cross-correlation's peak between input and output, from their
+ * averaged cross spectrum, which is aligned by the stated delay already. The middle and not the highest point:
+ * white noise through an equal average has a peak with a flat top.
  * References: C. H. Knapp & G. C. Carter (1976), IEEE Transactions on Acoustics, Speech, and Signal Processing
- * 24, 320-327 (delay from the cross-correlation's peak; recalled from memory).
+ * 24, 320-327 (cross-correlation from the cross spectrum); R. N. Bracewell (1983), Journal of the Optical
+ * Society of America 73, 1832-1835 (Hartley transform, by which a real transform runs backwards). Recalled
+ * from memory.
  */
 import type { CrossSpectra } from "../engine/cross-spectra.ts";
+import { RealTransform } from "../signal/real-transform.ts";
 
 export interface MeasuredDelay {
   /** Samples beyond the stated delay: 0 where the two agree. */
@@ -13,40 +17,47 @@ export interface MeasuredDelay {
   readonly correlation: number;
 }
 
-const FARTHEST = 64;
+/** The peak reaches as far as the correlation stays above this share of its height. */
+const SHOULDER = 0.5;
 
 /** null without segments, or where the output is nothing. */
 export function measuredDelay(cross: CrossSpectra): MeasuredDelay | null {
   if (cross.segments === 0) return null;
   const last = cross.xx.length - 1;
   const size = 2 * last;
-  const total = (power: Float64Array) =>
-    power.reduce((sum, p, k) => sum + (k === 0 || k === last ? 1 : 2) * p, 0);
+  const total = (p: Float64Array) => p.reduce((sum, v, k) => sum + (k === 0 || k === last ? 1 : 2) * v, 0);
   const scale = Math.sqrt(total(cross.xx) * total(cross.yy));
-  if (!(scale > 0)) return null;
-  const at = (lag: number) => {
-    let sum = 0;
-    for (let k = 0; k <= last; k++) {
-      const angle = (2 * Math.PI * ((k * lag) % size)) / size;
-      const part = cross.xyRe[k]! * Math.cos(angle) - cross.xyIm[k]! * Math.sin(angle);
-      sum += k === 0 || k === last ? part : 2 * part;
-    }
-    return sum / scale;
-  };
-  const farthest = Math.min(FARTHEST, Math.floor(size / 4));
+  if (!(scale > 0) || size < 4) return null;
+  const correlation = backwards(cross.xyRe, cross.xyIm, size);
+  const at = (lag: number) => correlation[(lag + size) % size]! / scale;
+  const farthest = Math.floor(size / 4);
   let best = 0;
-  let peak = at(0);
   for (let lag = 1; lag <= farthest; lag++)
-    for (const side of [lag, -lag]) {
-      const r = at(side);
-      // A tie, as in a pure sine that repeats, goes to the lag nearest to the stated delay.
-      if (r > peak + 1e-12) {
-        peak = r;
-        best = side;
-      }
-    }
-  const [a, c] = [at(best - 1), at(best + 1)];
-  const bend = a - 2 * peak + c;
-  const shift = bend < 0 ? (0.5 * (a - c)) / bend : 0;
-  return { beyond_samples: best + Math.max(-0.5, Math.min(0.5, shift)), correlation: peak };
+    for (const side of [lag, -lag]) if (at(side) > at(best) + 1e-12) best = side;
+  const peak = at(best);
+  if (!(peak > 0)) return { beyond_samples: 0, correlation: peak };
+  const shoulder = SHOULDER * peak;
+  let left = best;
+  let right = best;
+  while (left > best - farthest && at(left - 1) >= shoulder) left--;
+  while (right < best + farthest && at(right + 1) >= shoulder) right++;
+  // Where the curve passes the shoulder, between lags; a peak as wide as the segment has no sides to measure.
+  const cut = (inside: number, outside: number) =>
+    inside +
+    (outside - inside) * Math.min(1, Math.max(0, (at(inside) - shoulder) / (at(inside) - at(outside) || 1)));
+  const middle = (cut(left, left - 1) + cut(right, right + 1)) / 2;
+  const wide = left <= best - farthest || right >= best + farthest;
+  return { beyond_samples: wide ? best : middle, correlation: peak };
+}
+
+/** Real sequence of `size` samples whose half spectrum is re + i im, times its length. */
+function backwards(re: Float64Array, im: Float64Array, size: number): Float64Array {
+  const folded = new Float64Array(size);
+  for (let k = 0; k < size; k++) folded[k] = 2 * k <= size ? re[k]! - im[k]! : re[size - k]! + im[size - k]!;
+  const a = new Float64Array(size / 2 + 1);
+  const b = new Float64Array(size / 2 + 1);
+  new RealTransform(size).transform(folded, a, b);
+  return Float64Array.from({ length: size }, (_, n) =>
+    2 * n <= size ? a[n]! - b[n]! : a[size - n]! + b[size - n]!,
+  );
 }

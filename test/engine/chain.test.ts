@@ -166,7 +166,7 @@ describe("books", () => {
       for (const m of results[0]!.measures) {
         const delay = m.cross === null ? null : measuredDelay(m.cross);
         if (delay === null || m.planned.design.taps === null) continue;
-        expect(Math.abs(delay.beyond_samples), name).toBeLessThan(0.02);
+        expect(Math.abs(delay.beyond_samples), name).toBeLessThan(0.1);
         expect(delay.correlation, name).toBeGreaterThan(0.1);
       }
     }
