@@ -2,10 +2,13 @@
 import type { ChannelAccount, StageAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
 import { psdPlot } from "./plots/psd.ts";
+import { removalPlot } from "./plots/removal.ts";
 import { responsePlot } from "./plots/response.ts";
+import { stepPlot } from "./plots/step.ts";
 import {
   count,
   dB,
+  duration,
   edges,
   hertz,
   number,
@@ -22,6 +25,7 @@ export function stageSection(s: StageAccount): string {
     figures(s),
     alias(s),
     responsePlot(anchor("response", s.place), s, `Stage ${s.place}, ${s.stage}: gain against frequency`),
+    stepPlot(anchor("step", s.place), s, `Stage ${s.place}, ${s.stage}: answer to a sudden step`),
     folds(s),
     ...Object.entries(s.channels).map(([name, c]) => channel(s, name, c)),
     details(s),
@@ -96,6 +100,12 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
     ["rms removed", withUnit(c.rms_removed, c.unit)],
     ["variance removed", percent(c.variance_removed_pct)],
     ["measured on", c.basis ?? "–"],
+    [
+      "late, stated and by cross-correlation",
+      c.delay_measured === null
+        ? "–"
+        : `${duration(c.delay_measured.stated_s)}; ${duration(c.delay_measured.delay_s)} (correlation ${number(c.delay_measured.correlation)})`,
+    ],
   ];
   const e = c.extremes;
   if (e !== null) {
@@ -106,6 +116,8 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
       ["highest after", at(e.highest_out)],
       ["lowest before", at(e.lowest_in)],
       ["lowest after", at(e.lowest_out)],
+      ["height that the highest lost", withUnit(e.height_lost, c.unit)],
+      ["depth that the lowest lost", withUnit(e.depth_lost, c.unit)],
     );
   }
   const bands =
@@ -114,7 +126,18 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
       : htmlTable(
           `t-bands-${id}`,
           `${name}: power in ${squared(c.unit)} by band: before = after + removed + cross`,
-          ["band", "from", "to", "before", "after", "removed", "cross", "after, predicted", "finding"],
+          [
+            "band",
+            "from",
+            "to",
+            "before",
+            "after",
+            "removed",
+            "cross",
+            "after, predicted",
+            "as predicted",
+            "finding",
+          ],
           c.bands.map((b) => [
             b.name,
             hertz(b.from_Hz),
@@ -124,6 +147,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
             number(b.p_removed),
             number(b.cross),
             number(b.predicted_out),
+            b.as_predicted === null ? "–" : b.as_predicted ? "yes" : "no",
             b.finding,
           ]),
         );
@@ -141,6 +165,24 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
             t.folds ? `${withPeriod(t.lands_at_Hz)}, folded` : withPeriod(t.lands_at_Hz),
           ]),
         );
+  const r = c.removal;
+  const removal =
+    r === null
+      ? ""
+      : `${removalPlot(`removal-${id}`, r, c.unit, `${name}: when it was removed`)}${
+          r.events.length === 0
+            ? ""
+            : htmlTable(
+                `t-events-${id}`,
+                `${name}: largest single removals`,
+                ["time", "removed", "times the rms"],
+                r.events.map((e) => [
+                  timeForPeople(e.time),
+                  withUnit(e.removed, c.unit),
+                  number(e.times_rms, 3),
+                ]),
+              )
+        }`;
   const p = c.spectrum;
   const spectrum =
     p === null
@@ -153,7 +195,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
             3,
           )} and ${number(p.interval_95.upper, 3)} times those shown.`,
         )}</p>`;
-  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what the stage took out`, ["figure", "value"], rows)}${bands}${tones}${spectrum}`;
+  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what the stage took out`, ["figure", "value"], rows)}${bands}${tones}${spectrum}${removal}`;
 }
 
 function details(s: StageAccount): string {

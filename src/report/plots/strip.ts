@@ -2,6 +2,7 @@ import { scaleLinear, scaleUtc } from "d3-scale";
 import { area } from "d3-shape";
 import type { ChainChannelAccount } from "../account-format.ts";
 import { number, timeForPeople } from "../text.ts";
+import { clockFormat } from "./clock.ts";
 import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./frame.ts";
 
 /** Lowest to highest value per column of time, resampled input behind, clean series before it; gaps stay open. */
@@ -75,14 +76,4 @@ export function stripPlot(
     ],
     under: band("before", s.in_low, s.in_high),
   });
-}
-
-/** Ticks in 24-hour time, as fine as their spacing needs, or as dates; the same in every locale. */
-function clockFormat(ticks: readonly Date[]): (d: Date) => string {
-  const part = (d: Date, from: number, to: number) => d.toISOString().slice(from, to);
-  const step_s = ticks.length < 2 ? 1 : (ticks[1]!.getTime() - ticks[0]!.getTime()) / 1000;
-  if (step_s > 27 * 86_400) return (d) => part(d, 0, 7);
-  if (step_s >= 86_400) return (d) => part(d, 5, 10);
-  if (step_s >= 60) return (d) => (part(d, 11, 16) === "00:00" ? part(d, 5, 10) : part(d, 11, 16));
-  return (d) => part(d, 11, step_s >= 1 ? 19 : 23);
 }
