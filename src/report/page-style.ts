@@ -24,7 +24,8 @@ p,li{max-width:46rem;overflow-wrap:anywhere}
 .facts dd{margin:0;font-size:1.1rem;overflow-wrap:anywhere}
 .wide{overflow-x:auto;margin:.8rem 0}
 .pairs table{min-width:0}
-.pairs td{text-align:left;white-space:normal}
+.pairs td,.pairs th{text-align:left}
+.pairs td{white-space:normal}
 table{border-collapse:collapse;font:14px/1.4 system-ui,sans-serif;min-width:24rem}
 caption{text-align:left;color:var(--soft);padding:.2rem 0}
 th,td{padding:.25rem .7rem .25rem 0;text-align:right;border-bottom:1px solid var(--rule);white-space:nowrap;font-variant-numeric:tabular-nums}
