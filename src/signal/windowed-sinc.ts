@@ -5,9 +5,10 @@
  */
 import { DesignError } from "./design-error.ts";
 import { gainAt } from "./frequency-response.ts";
+import { type FilterShape, refuseLength } from "./linear-phase.ts";
 import { type WindowKind, windowCoefficients } from "./windows.ts";
 
-export type FilterShape = "low-pass" | "high-pass" | "band-pass" | "band-stop";
+export type { FilterShape } from "./linear-phase.ts";
 
 export interface WindowedSinc {
   /** At least 1. */
@@ -65,13 +66,7 @@ function ideal(shape: FilterShape, edges: readonly number[], m: number): number 
 }
 
 function refuseImpossible({ taps, shape, edges }: WindowedSinc): void {
-  if (!(Number.isInteger(taps) && taps >= 1))
-    throw new DesignError({
-      problem: "a filter has a whole number of taps",
-      given: `${taps} taps`,
-      allowed: "1 or more",
-      todo: "give a whole number",
-    });
+  refuseLength(taps, shape);
   const wanted = shape === "low-pass" || shape === "high-pass" ? 1 : 2;
   const rising = edges.every((f, i) => f > (i === 0 ? 0 : edges[i - 1]!) && f < 0.5);
   if (edges.length !== wanted || !rising)
@@ -80,12 +75,5 @@ function refuseImpossible({ taps, shape, edges }: WindowedSinc): void {
       given: `${edges.join(", ")} cycles/sample`,
       allowed: "above 0 and below 0.5 cycles/sample",
       todo: "move the edges",
-    });
-  if (taps % 2 === 0 && (shape === "high-pass" || shape === "band-stop"))
-    throw new DesignError({
-      problem: `a symmetric ${shape} filter of even length is zero at the Nyquist frequency, where it should pass`,
-      given: `${taps} taps`,
-      allowed: "an odd number of taps",
-      todo: `use ${taps + 1} taps`,
     });
 }
