@@ -65,10 +65,11 @@ export async function main(words: readonly string[], streams: Streams): Promise<
     });
   program
     .command("schema")
-    .description("print the JSON Schema of the pipeline file")
-    .action(async () => {
+    .description("print the JSON Schema of the pipeline file, or of the account")
+    .option("--account", "of the account (NAME.account.json)")
+    .action(async (options: { account?: boolean }) => {
       const { schemaCommand } = await import("./schema.ts");
-      code = schemaCommand(streams);
+      code = schemaCommand(options, streams);
     });
   program.addHelpText(
     "after",
