@@ -90,13 +90,14 @@ export class ClockGate {
     for (let i = 1; i < this.held.length; i++)
       if (this.held[i]!.time < row.time - this.jump_us) against++;
       else by++;
-    const needed = ahead > FAR_US && Number.isFinite(newest_us) ? WITNESSES_FAR : WITNESSES;
-    if (by >= needed) return "pass";
-    if (against >= WITNESSES) return "stray-time";
+    const trusted = Number.isFinite(newest_us);
+    const far = trusted ? ahead > FAR_US : this.held.some(({ time }) => row.time - time > FAR_US);
+    if (by >= (far ? WITNESSES_FAR : WITNESSES)) return "pass";
+    // Before any row is trusted, neither side of a far jump is: the longer one is then believed.
+    if (against >= (far && !trusted ? WITNESSES_FAR : WITNESSES)) return "stray-time";
     if (!final) return "open";
     if (against > by) return "stray-time";
-    const unconfirmed =
-      by === 0 && Number.isFinite(newest_us) && ahead > Math.max(FAR_US, STEPS_AT_END * this.step_us);
+    const unconfirmed = by === 0 && trusted && ahead > Math.max(FAR_US, STEPS_AT_END * this.step_us);
     return unconfirmed ? "stray-time" : "pass";
   }
 }

@@ -1,4 +1,3 @@
-import { MICROSECONDS_PER_DAY } from "./iso-time.ts";
 import type { TimeForm } from "./rows.ts";
 import { type ClockSettings, TimeReader } from "./time-reader.ts";
 
@@ -121,27 +120,29 @@ function countForm(cells: readonly string[]): TimeForm | null {
   return found?.[0] ?? null;
 }
 
-/** How many cells a form reads, how often the time then steps back, and a print of the times to compare. */
-function tryForm(
-  form: TimeForm,
-  cells: readonly string[],
-  settings: ClockSettings,
-): { read: number; backward: number; print: string } {
+interface Trial {
+  readonly read: number;
+  /** How often the time steps back from one cell to the next. */
+  readonly backward: number;
+  /** Digest of all times: two forms with the same one mean the same times. */
+  readonly print: number;
+}
+
+/** Cells that a form must fail on, without reading one before, to be given up. */
+const FAILED_ENOUGH = 8;
+
+function tryForm(form: TimeForm, cells: readonly string[], settings: ClockSettings): Trial {
   const reader = TimeReader.make(form, { ...settings, zone: "UTC" });
-  if (!(reader instanceof TimeReader)) return { read: 0, backward: 0, print: "" };
   let read = 0;
   let backward = 0;
   let previous = Number.NEGATIVE_INFINITY;
-  let print = "";
-  for (const cell of cells) {
-    const time = reader.time(cell);
-    if (Number.isNaN(time)) {
-      // Most forms fail on the first cells: they need not be tried on all of them.
-      if (read === 0 && print.length > 8) break;
-      print += "-";
-      continue;
-    }
-    if (print.length < 2000) print += `${time / MICROSECONDS_PER_DAY};`;
+  let print = 0;
+  let tried = 0;
+  for (const cell of reader instanceof TimeReader ? cells : []) {
+    const time = (reader as TimeReader).time(cell);
+    if (read === 0 && ++tried > FAILED_ENOUGH) break;
+    print = Math.imul(print, 16_777_619) ^ (Number.isNaN(time) ? 1 : Math.floor(time / 1000) % 2 ** 32);
+    if (Number.isNaN(time)) continue;
     read++;
     if (time < previous) backward++;
     previous = time;

@@ -1,5 +1,6 @@
 import type { ByteSource } from "./byte-source.ts";
 import { cellsOf } from "./cells.ts";
+import { findClockSet } from "./clock-set.ts";
 import { type FoundForm, findTimeForm } from "./find-time-form.ts";
 import { type LogHead, readHead } from "./head.ts";
 import { type Columns, findColumns, findNames, type NamesLine, timeText } from "./layout.ts";
@@ -30,6 +31,8 @@ export interface ProbedLog {
   readonly form: TimeForm;
   /** Earliest time among the first rows; -Infinity when none of them has a readable time. */
   readonly firstTime_us: number;
+  /** Rows above this line were written before the clock was set; 0 when there are none. */
+  readonly clockSetLine: number;
   readonly found: Record<string, string>;
 }
 
@@ -89,7 +92,7 @@ export async function probeLog(file: LogFile, request: ReadRequest, source: Byte
     namesLine: names.line,
     dataFromLine: layout.dataFromLine ?? (notes.length > 0 ? notes.at(-1)!.line + 1 : names.after),
     form,
-    firstTime_us: firstTime(file.name, rows, columns, form, request),
+    ...readFirstTimes(file.name, rows, columns, form, request),
     found: inWords(head, names, notes, numbers, form, request),
   };
 }
@@ -134,28 +137,37 @@ function foundForm(name: string, found: FoundForm, line: number): TimeForm {
   throw logProblems.timesUnreadable(name, found.cell, line, "a form that is known", undefined);
 }
 
-function firstTime(
+/**
+ * The earliest of the first times, and where the clock was set if it started from an epoch.
+ * @throws LogProblem when no time can be read
+ */
+function readFirstTimes(
   name: string,
   rows: readonly SampleRow[],
   columns: Columns,
   form: TimeForm,
   request: ReadRequest,
-): number {
+): { firstTime_us: number; clockSetLine: number } {
   const times = timeReader(name, form, request);
-  let first = Number.POSITIVE_INFINITY;
+  const read: { line: number; time: number }[] = [];
   let unreadable: { cell: string; line: number } | undefined;
   let local: { cell: string; line: number } | undefined;
   for (const { line, cells } of rows) {
     const cell = timeText(cells, columns.timeIndexes);
     if (cell === undefined) continue;
     const time = times.time(cell);
-    if (!Number.isNaN(time)) first = Math.min(first, time);
+    if (!Number.isNaN(time)) read.push({ line, time });
     else if (times.problem === "time-without-offset") local ??= { cell, line };
     else unreadable ??= { cell, line };
   }
-  if (Number.isFinite(first)) return first;
+  if (read.length > 0) {
+    const clockSetLine = findClockSet(read);
+    let first = Number.POSITIVE_INFINITY;
+    for (const { line, time } of read) if (line >= clockSetLine) first = Math.min(first, time);
+    return { firstTime_us: first, clockSetLine };
+  }
   if (local !== undefined) throw logProblems.zoneNeeded(name, local.cell, local.line);
-  if (unreadable === undefined) return Number.NEGATIVE_INFINITY;
+  if (unreadable === undefined) return { firstTime_us: Number.NEGATIVE_INFINITY, clockSetLine: 0 };
   const found = findTimeForm(timeCells(rows, columns), request.time);
   const looksLike = found.kind === "found" ? found.form : undefined;
   throw logProblems.timesUnreadable(name, unreadable.cell, unreadable.line, form, looksLike);

@@ -39,11 +39,13 @@ export class RowReader {
   private readonly values: Float64Array;
   /** Last value of each channel that does not look like a missing code. */
   private readonly before: Float64Array;
+  private readonly clockSetLine: number;
   private previous_us = Number.NEGATIVE_INFINITY;
 
   constructor(log: ProbedLog, request: ReadRequest, account: RowAccount, buffer: ReorderBuffer) {
     this.times = timeReader(log.file.name, log.form, request);
     this.columns = log.columns;
+    this.clockSetLine = log.clockSetLine;
     this.originalNames = log.columns.names;
     this.timeNames = log.columns.timeIndexes.map((i) => log.columns.names[i]!);
     this.channelNames = log.columns.channelIndexes.map((i) => log.columns.names[i]!);
@@ -144,6 +146,7 @@ export class RowReader {
     if (time < this.previous_us) noteLine(this.backwardSteps, line);
     this.previous_us = time;
     if (unreadable && !kept) setAside(account, "no-readable-value", line);
+    else if (line < this.clockSetLine) setAside(account, "stray-time", line);
     else this.gate.add(time, line, values);
   }
 
