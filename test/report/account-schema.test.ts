@@ -1,5 +1,5 @@
 import { join } from "node:path";
-import Ajv2020 from "ajv/dist/2020.js";
+import { Ajv2020 } from "ajv/dist/2020.js";
 import { describe, expect, it } from "vitest";
 import { forebay, place, put, ROOT, text } from "../cli/harness.ts";
 

@@ -131,16 +131,16 @@ writes: { folder: out }
 
   it("says in its headline what the account says", async () => {
     const page = await open(1200, "light");
-    const facts = (await page.locator(".facts").innerText()).replaceAll("\u202f", "");
+    const facts = ((await page.locator(".facts").textContent()) ?? "").replaceAll("\u202f", "");
     const a = account(folder, "out", "page.account.json");
     expect(facts).toContain(`${a.inputs[0]!.rows.read} rows`);
     expect(facts).toContain(`${a.outputs[0]!.rows} samples`);
-    const verdict = await page.locator(".verdict strong").innerText();
+    const verdict = await page.locator(".verdict strong").textContent();
     expect(verdict).toBe(
       a.verdict.met ? "All requirements and alias limits are met." : "Not met: read this first.",
     );
     for (const remark of a.verdict.remarks)
-      expect(await page.locator(".verdict").innerText()).toContain(remark);
+      expect(await page.locator(".verdict").textContent()).toContain(remark);
     await page.close();
   });
 
