@@ -19,6 +19,7 @@ import { STAGES } from "../stages/registry.ts";
 import type { Streams } from "./clean.ts";
 import { cleanSeries } from "./clean-series.ts";
 import { DONE, NOT_MET, WRONG } from "./exit-codes.ts";
+import { gridBooks } from "./grid-books.ts";
 import { shownPath } from "./shown-path.ts";
 import { wrap } from "./text.ts";
 import { VERSION } from "./version.ts";
@@ -227,7 +228,7 @@ async function again(account: Account, path: string, folder: string, pipelinePat
     until_us: instant(account.scope.until, Number.POSITIVE_INFINITY),
   };
   const checks = await withTemporaryFolder(async (place) => {
-    await cleanSeries({
+    const task = {
       loaded,
       plan,
       logger: account.logger,
@@ -236,8 +237,14 @@ async function again(account: Account, path: string, folder: string, pipelinePat
       name,
       scope,
       version: VERSION,
-    });
-    return [...account.outputs.map((o) => o.file), `${name}.account.json`].map((file): Check => {
+    };
+    await cleanSeries(task);
+    const grid = await withTemporaryFolder((bare) => gridBooks(task, bare));
+    const kept: Check[] =
+      grid === null
+        ? []
+        : [{ what: `kept + removed = input at ${grid.compared} samples`, difference: grid.misfit }];
+    const again = [...account.outputs.map((o) => o.file), `${name}.account.json`].map((file): Check => {
       const then = file.endsWith(".account.json") ? resolve(path) : join(folder, file);
       const what = `output ${file} made again`;
       const now = storedFile(join(place, file));
@@ -246,6 +253,7 @@ async function again(account: Account, path: string, folder: string, pipelinePat
       const at = firstDifference(then, join(place, file));
       return { what, difference: at === null ? null : `from byte ${at.byte}, line ${at.line} on` };
     });
+    return [...again, ...kept];
   });
   return more.length === 0
     ? checks

@@ -46,6 +46,7 @@ writes: { folder: ../cleaned/tank, removed: true }
     expect(run.status).toBe(0);
     expect(run.stdout).toContain("every output is the same, byte for byte");
     expect(run.stdout).not.toContain("DIFFERENT");
+    expect(run.stdout).toContain("kept + removed = input at 892 samples");
   });
 
   it("names the input, the pipeline line, or the output in which one bit was flipped", () => {
