@@ -1,4 +1,5 @@
 import type { GridBlock } from "../signal/grid-block.ts";
+import { stateOf } from "../signal/marks.ts";
 import type { IndexRange } from "./index-range.ts";
 
 const COLUMNS = 512;
@@ -14,6 +15,8 @@ export class TimeStrip {
   first = Number.NaN;
   low: number[] = [];
   high: number[] = [];
+  /** Place in STATES of the worst state in each column. */
+  worst: number[] = [];
   private readonly range: IndexRange;
 
   constructor(range: IndexRange) {
@@ -36,11 +39,15 @@ export class TimeStrip {
       const at = column - this.first;
       let low = this.low[at] ?? Number.POSITIVE_INFINITY;
       let high = this.high[at] ?? Number.NEGATIVE_INFINITY;
+      let worst = this.worst[at] ?? 0;
       for (; i < stop; i++) {
         const v = block.values[i]!;
         if (v < low) low = v;
         if (v > high) high = v;
+        const state = stateOf(block.marks[i]!);
+        if (state > worst) worst = state;
       }
+      this.worst[at] = worst;
       this.low[at] = low;
       this.high[at] = high;
     }
@@ -50,12 +57,15 @@ export class TimeStrip {
     const first = Math.floor(this.first / 2);
     const low: number[] = [];
     const high: number[] = [];
+    const worst: number[] = [];
     for (let c = 0; c < this.low.length; c++) {
       const at = Math.floor((this.first + c) / 2) - first;
       low[at] = Math.min(low[at] ?? Number.POSITIVE_INFINITY, this.low[c] ?? Number.POSITIVE_INFINITY);
       high[at] = Math.max(high[at] ?? Number.NEGATIVE_INFINITY, this.high[c] ?? Number.NEGATIVE_INFINITY);
+      worst[at] = Math.max(worst[at] ?? 0, this.worst[c] ?? 0);
     }
     this.first = first;
+    this.worst = worst;
     this.low = low;
     this.high = high;
     this.width *= 2;

@@ -262,6 +262,8 @@ export interface ChainChannelAccount {
     in_high: (number | null)[];
     out_low: (number | null)[];
     out_high: (number | null)[];
+    /** Worst state of the clean series in each column; null where it has no sample. */
+    out_state: (State | null)[];
   };
 }
 

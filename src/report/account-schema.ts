@@ -178,6 +178,7 @@ const strip = z.object({
   in_high: z.array(maybe),
   out_low: z.array(maybe),
   out_high: z.array(maybe),
+  out_state: z.array(states.keyof().nullable()),
 });
 
 const chain = z.object({

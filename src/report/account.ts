@@ -10,6 +10,7 @@ import type { Pipeline } from "../pipeline/schema.ts";
 import { convolveTaps } from "../signal/convolve.ts";
 import type { Grid } from "../signal/grid.ts";
 import { intervalSeconds, timeOf } from "../signal/grid.ts";
+import { STATES } from "../signal/marks.ts";
 import { stepResponse } from "../signal/response.ts";
 import type {
   Account,
@@ -242,16 +243,19 @@ function strip(
   const spread = (s: TimeStrip, g: Grid) => {
     const low: (number | null)[] = new Array(columns).fill(null);
     const high: (number | null)[] = new Array(columns).fill(null);
+    const worst: (number | null)[] = new Array(columns).fill(null);
     for (let i = 0; i < s.low.length; i++) {
       const a = s.low[i];
       const b = s.high[i];
-      if (a === undefined || b === undefined || !Number.isFinite(a) || !Number.isFinite(b)) continue;
+      if (a === undefined || b === undefined) continue;
       const t_us = timeOf(g, (s.first + i) * s.width);
       const at = Math.min(columns - 1, Math.max(0, Math.floor((t_us - start_us) / 1e6 / column_s)));
+      worst[at] = Math.max(worst[at] ?? 0, s.worst[i] ?? 0);
+      if (!Number.isFinite(a) || !Number.isFinite(b)) continue;
       low[at] = Math.min(low[at] ?? a, a);
       high[at] = Math.max(high[at] ?? b, b);
     }
-    return { low, high };
+    return { low, high, worst };
   };
   const x = spread(before, grid);
   const y = spread(after, outGrid);
@@ -262,6 +266,7 @@ function strip(
     in_high: x.high,
     out_low: y.low,
     out_high: y.high,
+    out_state: y.worst.map((place) => (place === null ? null : STATES[place]!)),
   };
 }
 

@@ -42,6 +42,9 @@ figcaption{color:var(--soft);font-size:.92rem}
 .trace.after{stroke:var(--after)}
 .trace.removed{stroke:var(--removed);stroke-dasharray:2 3}
 .band.before{fill:var(--before);fill-opacity:.35;stroke:none}
+.state.whole{fill:var(--after)}
+.state.part{fill:var(--before)}
+.state.none{fill:var(--removed)}
 .interval{stroke:var(--ink);stroke-width:1.4;fill:none}
 .legend{margin:.2rem 0;font:14px system-ui,sans-serif}
 .legend span{white-space:nowrap;margin-right:1rem}

@@ -38,6 +38,8 @@ export function plot(options: {
   readonly y: Axis;
   readonly traces: readonly Trace[];
   readonly extra?: string;
+  /** Said below the picture, beside the title. */
+  readonly note?: string;
   /** Drawn below the traces. */
   readonly under?: string;
 }): string {
@@ -65,7 +67,7 @@ export function plot(options: {
     (LEFT + right) / 2
   }" y="${HEIGHT - 8}" text-anchor="middle">${escaped(x.label)}</text><text class="label" transform="translate(14 ${(TOP + bottom) / 2}) rotate(-90)" text-anchor="middle">${escaped(
     y.label,
-  )}</text>${options.under ?? ""}${traces}${options.extra ?? ""}</svg>${legend(options.traces)}<figcaption>${escaped(options.title)}</figcaption></figure>`;
+  )}</text>${options.under ?? ""}${traces}${options.extra ?? ""}</svg>${legend(options.traces)}<figcaption>${escaped(options.note === undefined ? options.title : `${options.title}. ${options.note}`)}</figcaption></figure>`;
 }
 
 function tracePath(trace: Trace, x: Scale, y: Scale): string {

@@ -1,6 +1,6 @@
 import { scaleLinear, scaleUtc } from "d3-scale";
 import { area } from "d3-shape";
-import type { ChainChannelAccount } from "../account-format.ts";
+import type { ChainChannelAccount, State } from "../account-format.ts";
 import { number, timeForPeople } from "../text.ts";
 import { clockFormat } from "./clock.ts";
 import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./frame.ts";
@@ -75,5 +75,29 @@ export function stripPlot(
       { kind: "after", name: "after", points: after },
     ],
     under: band("before", s.in_low, s.in_high),
+    extra: stateBar(s.out_state, (i) => x(at(i))),
+    note: "The bar along the foot: thin where samples are measured, half high where they are flagged, full where there is none.",
   });
+}
+
+const BAR = 12;
+
+/** A bar along the foot of the plot: its height tells the worst state of each column, and a title names it. */
+function stateBar(states: readonly (State | null)[], x: (column: number) => number): string {
+  let bar = "";
+  for (let i = 0; i < states.length; ) {
+    let state = states[i]!;
+    let end = i + 1;
+    // A column without a sample lies between two samples: it goes with the one before it.
+    while (end < states.length && (states[end] === state || states[end] === null)) end++;
+    state ??= "measured";
+    const kind =
+      state === "measured" ? "whole" : state === "missing" || state === "screened" ? "none" : "part";
+    const height = kind === "whole" ? 2 : kind === "part" ? BAR / 2 : BAR;
+    const left = x(i);
+    const width = Math.max(0.8, x(end) - left);
+    bar += `<rect class="state ${kind}" x="${left.toFixed(1)}" y="${(HEIGHT - BOTTOM - height).toFixed(1)}" width="${width.toFixed(1)}" height="${height}"><title>${state}</title></rect>`;
+    i = end;
+  }
+  return bar;
 }
