@@ -8,8 +8,11 @@ export type ByteSource = (file: LogFile) => AsyncIterable<Uint8Array>;
 
 export const fromDisk: ByteSource = (file) => createReadStream(file.path, { highWaterMark: 1 << 17 });
 
-/** Pieces in which compressed bytes are unpacked: small, so that what they grow into stays small too. */
-const PACKED_PIECE = 1 << 12;
+/**
+ * Pieces in which compressed bytes are unpacked: small, so that what they grow into stays small too, and so that
+ * little is lost in front of damaged bytes.
+ */
+const PACKED_PIECE = 1 << 10;
 
 /** Byte count and SHA-256 of everything that flowed through `tap`. */
 export class Digest {
@@ -74,6 +77,8 @@ async function* gunzipped(pieces: AsyncIterable<Uint8Array>): AsyncGenerator<Uin
   let wake = (): void => {};
   gunzip.on("data", (chunk: Buffer) => ready.push(chunk));
   gunzip.on("end", () => wake());
+  // Zero bytes behind the packed part end it before its writer does; only the closing is then still to come.
+  gunzip.on("close", () => wake());
   gunzip.on("error", (error) => {
     failure = error;
     wake();

@@ -172,6 +172,26 @@ describe("gzip", () => {
   });
 });
 
+describe("what stands behind the packed part", () => {
+  const packed = gzipSync("time,a\n2031-03-04T00:00:00Z,1.5\n");
+  const more = gzipSync("2031-03-04T00:00:01Z,2.5\n");
+  it("may be another one, or zero bytes", async () => {
+    for (const chunk of [1, 20, 65_536]) {
+      const { rows, diagnostics } = await readTexts(
+        { log: Buffer.concat([packed, more, Buffer.alloc(3000)]) },
+        {},
+        chunk,
+      );
+      expect([rows.length, diagnostics]).toEqual([2, []]);
+    }
+  });
+  it("is named when it is anything else", async () => {
+    const log = Buffer.concat([packed, Buffer.alloc(2000, "x")]);
+    const { diagnostics } = await readTexts({ log });
+    expect(diagnostics.map((d) => d.code)).toEqual(["log-damaged"]);
+  });
+});
+
 describe("the last line", () => {
   const body =
     "time,a,b\n2031-03-04T00:00:00Z,1.25,7\n2031-03-04T00:00:01Z,1.26,7\n2031-03-04T00:00:02Z,1.27,7\n";
