@@ -8,6 +8,7 @@ import type { StageAccount } from "../report/account-format.ts";
 import { STAGES } from "../stages/registry.ts";
 import { checkRemoved, type Streams } from "./clean.ts";
 import { DONE, NOT_MET, WRONG } from "./exit-codes.ts";
+import { responsePicture } from "./response-picture.ts";
 import { shownPath } from "./shown-path.ts";
 import { figure, frequencyText, table, timeText, wrap } from "./text.ts";
 
@@ -120,6 +121,7 @@ function stageText(s: StageAccount): string[] {
       `  noise bandwidth ${frequencyText(s.enbw_Hz, false)}, overshoot ${figure(s.overshoot_pct, 3)} %`,
     );
   }
+  lines.push(...responsePicture(s));
   if (s.alias !== null)
     lines.push(
       wrap(

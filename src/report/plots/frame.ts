@@ -86,7 +86,7 @@ function legend(traces: readonly Trace[]): string {
   return `<p class="legend">${seen
     .map(
       (t) =>
-        `<span><svg viewBox="0 0 34 10" aria-hidden="true"><path class="trace ${t.kind}" d="M1 5H33"/></svg>${escaped(t.name)}</span>`,
+        `<span><svg viewBox="0 0 34 10" aria-hidden="true">${t.points.length === 0 ? `<path class="band ${t.kind}" d="M1 1H33V9H1Z"/>` : `<path class="trace ${t.kind}" d="M1 5H33"/>`}</svg>${escaped(t.name)}</span>`,
     )
     .join(" ")}</p>`;
 }
