@@ -133,21 +133,19 @@ export function gridStageAccount(
   for (const [c, channel] of plan.channels.entries()) {
     const result = results[c]!;
     channels[channel.name] = { ...unmeasured(channel.unit), ...counted(result.gridCounts) };
-    const counts = result.interpolation as { blend: number };
-    const gain = interpolation.meanPowerGain;
+    const measured = result.interpolation;
     effect[channel.name] = {
-      ...result.interpolation,
-      ...(gain === null
-        ? {}
-        : {
-            row_interval_s: nominal_s,
-            mean_gain: meanGains(nominal_s).map(({ share, f_Hz }) => ({
-              frequency_Hz: f_Hz,
-              share_of_rate: share,
-              gain_dB: 10 * Math.log10(Math.max(1e-40, gain(counts.blend, f_Hz, nominal_s))),
-            })),
-            noise_variance_kept_pct: 100 * (1 - counts.blend),
-          }),
+      between: interpolation.between,
+      ...measured,
+      row_interval_s: nominal_s,
+      mean_gain: shares(nominal_s).map(({ share, f_Hz }) => {
+        const power = interpolation.meanPowerGain(measured, f_Hz, nominal_s);
+        return {
+          frequency_Hz: f_Hz,
+          share_of_rate: share,
+          gain_dB: power === null ? null : 10 * Math.log10(Math.max(1e-40, power)),
+        };
+      }),
     };
   }
   return {
@@ -159,7 +157,7 @@ export function gridStageAccount(
   };
 }
 
-const meanGains = (interval_s: number) =>
+const shares = (interval_s: number) =>
   [0.05, 0.1, 0.2, 0.3, 0.4, 0.5].map((share) => ({ share, f_Hz: share / interval_s }));
 
 function response(planned: PlannedStage, interval_s: number): StageAccount["response"] {

@@ -6,7 +6,7 @@
 import type { z } from "zod";
 import { duration, instant, oneOf, rate, stageSettings, truth } from "../pipeline/kinds.ts";
 import { intervalSeconds, makeGrid } from "../signal/grid.ts";
-import { meanPowerGain, RowInterpolator } from "../signal/row-interpolation.ts";
+import { methodSays, ROW_METHODS, rowKernelFor, rowPowerGain, rowsBeyond } from "./parts/row-methods.ts";
 import type { DesignOutcome, GridDesign, Problem, Signal, Stage } from "./stage.ts";
 
 /** Share by which the grid may be longer than the log's own interval before it counts as longer. */
@@ -15,9 +15,10 @@ const LONGER_BY = 1.02;
 const settings = stageSettings("resample", {
   interval: duration({ about: "Sample interval of the grid." }).optional(),
   rate: rate({ about: "Sampling rate of the grid, instead of its interval." }).optional(),
-  between: oneOf(["straight-line", "nearest-sample"], {
+  between: oneOf(ROW_METHODS, {
     default: "straight-line",
-    about: "Value between two rows: on the straight line that joins them, or that of the nearer one.",
+    about:
+      "Value between rows: on the straight line, the nearer row, on cubics (monotone ones never overshoot), by a windowed sinc (nearly even clocks only), or the mean of the grid cell.",
   }),
   "longest-gap": duration({
     about:
@@ -71,14 +72,12 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       todo: `write ${2 * interval} s to bridge one lost row`,
     });
   if (problems.length > 0) return { design: null, problems };
-  const line = s.between === "straight-line";
+  const ahead = (1 + rowsBeyond(s.between)) * (longestGap_us / 1e6 / interval);
   return {
     problems,
     design: {
       grid,
-      says: `Put the rows onto an even grid of ${interval} s, ${
-        line ? "on the straight line between neighbouring rows" : "each grid time taking the nearest row"
-      }; rows more than ${longestGap_us / 1e6} s apart are not joined.`,
+      says: `Put the rows onto an even grid of ${interval} s, ${methodSays(s.between)}; rows more than ${longestGap_us / 1e6} s apart are not joined.`,
       settings: {
         interval_s: interval,
         between: s.between,
@@ -89,8 +88,8 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       taps: null,
       delay: { samples: 0, indexSamples: 0, compensated_s: 0 },
       reach: {
-        before: Math.ceil(longestGap_us / 1e6 / interval),
-        after: Math.ceil(longestGap_us / 1e6 / interval),
+        before: Math.ceil(ahead),
+        after: Math.ceil(ahead),
       },
       end_s: 0,
       keepEvery: 1,
@@ -99,16 +98,12 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       kernel: () => {
         throw new Error("resample works on rows");
       },
-      rowKernel: () => {
-        const rows = new RowInterpolator(grid, s.between, longestGap_us);
-        return {
-          push: (times, values, count, emit) => rows.push(times, values, count, emit),
-          flush: (emit) => rows.flush(emit),
-          effect: () => ({ ...rows.effect() }),
-        };
-      },
+      rowKernel: () => rowKernelFor(s.between, grid, longestGap_us),
       checkInterval: (nominal_s) => checkInterval(s, interval, longestGap_us / 1e6, nominal_s),
-      interpolation: { between: s.between, meanPowerGain: line ? meanPowerGain : null },
+      interpolation: {
+        between: s.between,
+        meanPowerGain: (effect, f_Hz, row_s) => rowPowerGain(s.between, effect, f_Hz, row_s, interval),
+      },
     },
   };
 }

@@ -113,7 +113,12 @@ export interface GridDesign extends StageDesign {
   /** The effect of interpolation on the spectrum: mean |H|^2 at f, from what `effect` counted. */
   readonly interpolation: {
     readonly between: string;
-    readonly meanPowerGain: ((blend: number, f_Hz: number, rowInterval_s: number) => number) | null;
+    /** null where the method has no response because it is not linear. */
+    readonly meanPowerGain: (
+      effect: Record<string, unknown>,
+      f_Hz: number,
+      rowInterval_s: number,
+    ) => number | null;
   };
 }
 
