@@ -1,0 +1,151 @@
+/**
+ * Weighted least-squares filters: the smallest integral of the weighted squared error over bands, in closed form.
+ * References: D. W. Tufts & J. T. Francis (1970), IEEE Transactions on Audio and Electroacoustics AU-18, 487-494;
+ * T. W. Parks & C. S. Burrus (1987), Digital Filter Design, section 3.2 (normal equations of a Toeplitz and a Hankel
+ * part). Recalled from memory.
+ */
+import { factorize, solve } from "./cholesky.ts";
+import { type DesignBand, largestDontCareGain, refuseImpossibleBands, wantedGain } from "./design-bands.ts";
+import { DesignError } from "./design-error.ts";
+import { amplitudeAt } from "./linear-phase.ts";
+
+/** Above this the normal equations take seconds. */
+export const MOST_LEAST_SQUARES_TAPS = 2001;
+
+export interface LeastSquaresFilter {
+  /** Exactly symmetric. */
+  readonly taps: Float64Array;
+  /** Sum over the bands of weight times the integral of (A - wanted)^2 over f, cycles/sample, measured on the taps. */
+  readonly squaredError: number;
+  /** Largest gain where nothing was asked: a warning when it passes the passband's. */
+  readonly largestDontCareGain: number;
+}
+
+/**
+ * @param taps   1 to 2001; odd lengths make type I, even lengths type II, which is zero at the Nyquist frequency
+ * @param bands  rising, with gaps between
+ * @throws DesignError for impossible bands
+ */
+export function designLeastSquares(taps: number, bands: readonly DesignBand[]): LeastSquaresFilter {
+  refuseImpossibleBands(taps, MOST_LEAST_SQUARES_TAPS, bands);
+  const parts = bands.map((band) => bandIntegrals(taps, band));
+  const weights = bands.map((b) => b.weight);
+  const h = solveNormalEquations(taps, parts, weights);
+  return {
+    taps: h,
+    squaredError: squaredError(h, bands),
+    largestDontCareGain: largestDontCareGain(h, bands).gain,
+  };
+}
+
+/** What a band of weight 1 contributes to the normal equations. */
+export interface BandIntegrals {
+  /** Integral of cos(2 pi f q), q = 0 … taps. */
+  readonly cosines: Float64Array;
+  /** Integral of wanted gain times cos(2 pi f p), p = the distance of each tap of the second half from the centre. */
+  readonly wanted: Float64Array;
+}
+
+export function bandIntegrals(taps: number, band: DesignBand): BandIntegrals {
+  const { from, to } = band;
+  const cosines = new Float64Array(taps + 1).map((_, q) => integralOfCosine(from, to, q));
+  const centre = (from + to) / 2;
+  const slope = (wantedGain(band, to) - wantedGain(band, from)) / (to - from);
+  const middle = wantedGain(band, centre);
+  const wanted = new Float64Array(Math.ceil(taps / 2)).map((_, i) => {
+    const p = distance(taps, i);
+    return middle * integralOfCosine(from, to, p) + slope * integralOfRampCosine(from, to, p);
+  });
+  return { cosines, wanted };
+}
+
+/** Distance of the i-th tap of the second half from the centre, in samples. */
+const distance = (taps: number, i: number): number => (taps % 2 === 1 ? i : i + 0.5);
+
+/** Integral of cos(2 pi f q) from a to b. */
+function integralOfCosine(a: number, b: number, q: number): number {
+  const x = Math.PI * q * (b - a);
+  const share = x === 0 ? 1 : Math.sin(x) / x;
+  return (b - a) * share * Math.cos(Math.PI * ((q * (a + b)) % 2));
+}
+
+/** Integral of (f - centre) cos(2 pi f q) from a to b. */
+function integralOfRampCosine(a: number, b: number, q: number): number {
+  const h = (b - a) / 2;
+  const x = 2 * Math.PI * q * h;
+  // sin x - x cos x loses its digits for small x, where its series is short.
+  const x2 = x * x;
+  const bend =
+    Math.abs(x) < 0.3
+      ? (x * x2 * (1 - (x2 / 10) * (1 - (x2 / 28) * (1 - (x2 / 54) * (1 - x2 / 88))))) / 3
+      : Math.sin(x) - x * Math.cos(x);
+  if (x === 0) return 0;
+  return (-2 * h * h * Math.sin(Math.PI * ((q * (a + b)) % 2)) * bend) / x2;
+}
+
+/** The taps for weights of the bands, from integrals that do not depend on the weights. */
+export function solveNormalEquations(
+  taps: number,
+  parts: readonly BandIntegrals[],
+  weights: readonly number[],
+): Float64Array {
+  const m = Math.ceil(taps / 2);
+  const cosines = new Float64Array(taps + 1);
+  const wanted = new Float64Array(m);
+  for (const [b, part] of parts.entries()) {
+    for (let q = 0; q <= taps; q++) cosines[q]! += weights[b]! * part.cosines[q]!;
+    for (let i = 0; i < m; i++) wanted[i]! += weights[b]! * part.wanted[i]!;
+  }
+  // cos(p) cos(q) = (cos(p - q) + cos(p + q)) / 2; even lengths have distances of half samples, whose sum is i + j + 1.
+  const odd = taps % 2 === 1;
+  const matrix = new Float64Array(m * m);
+  for (let i = 0; i < m; i++)
+    for (let j = 0; j <= i; j++) {
+      const value = (cosines[i - j]! + cosines[i + j + (odd ? 0 : 1)]!) / 2;
+      matrix[i * m + j] = value;
+      matrix[j * m + i] = value;
+    }
+  const factor = factorize(matrix, m);
+  const coefficients = solve(factor, wanted);
+  if (!coefficients.every(Number.isFinite))
+    throw new DesignError({
+      problem: "the least-squares equations cannot be solved in double precision",
+      given: `${taps} taps`,
+      allowed: "fewer taps, or narrower gaps between the bands",
+      todo: "use fewer taps",
+    });
+  const h = new Float64Array(taps);
+  for (let i = 0; i < m; i++) {
+    const value = odd && i === 0 ? coefficients[0]! : coefficients[i]! / 2;
+    const right = Math.floor(taps / 2) + i;
+    h[right] = value;
+    h[taps - 1 - right] = value;
+  }
+  return h;
+}
+
+/** Abscissae and weights of Gauss-Legendre quadrature with four points on -1 … 1 (Abramowitz & Stegun, table 25.4). */
+const GAUSS = [
+  [0.8611363115940526, 0.3478548451374538],
+  [0.3399810435848563, 0.6521451548625461],
+] as const;
+/** Panels to a lobe of the response. */
+const PANELS = 8;
+
+/** Weighted integral of the squared error over the bands, cycles/sample. */
+export function squaredError(taps: Float64Array, bands: readonly DesignBand[]): number {
+  let whole = 0;
+  for (const band of bands) {
+    const panels = Math.ceil(PANELS * taps.length * (band.to - band.from)) + 1;
+    const half = (band.to - band.from) / (2 * panels);
+    let sum = 0;
+    for (let i = 0; i < panels; i++)
+      for (const [x, w] of GAUSS)
+        for (const sign of [-1, 1]) {
+          const f = band.from + half * (2 * i + 1 + sign * x);
+          sum += w * (amplitudeAt(taps, f) - wantedGain(band, f)) ** 2;
+        }
+    whole += band.weight * half * sum;
+  }
+  return whole;
+}
