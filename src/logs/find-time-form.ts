@@ -55,6 +55,9 @@ const TOUCHING = [
 ];
 const GLUES = [" ", "'T'", ", ", " - "];
 
+/** Share of the cells that the better form reads, from which on a lesser form may have been meant. */
+const NEARLY_ALL = 0.75;
+
 let candidates: readonly TimeForm[] | undefined;
 
 /** Every date with every time, and dates alone. */
@@ -86,6 +89,9 @@ export function findTimeForm(
   if (filled.length === 0) return { kind: "none", cell: first };
   const count = countForm(filled);
   if (count !== null) return { kind: "found", form: count };
+  // No other form reads what ISO 8601 reads, so where it reads all there is nothing left to compare.
+  if (tryForm("iso-8601", filled, settings).read === filled.length)
+    return { kind: "found", form: "iso-8601" };
   const fits = among
     .map((form) => ({ form, ...tryForm(form, filled, settings) }))
     .filter(({ read }) => 2 * read > filled.length);
@@ -100,7 +106,10 @@ export function findTimeForm(
   }
   const winner = best[0]!;
   // A form that reads a few cells less but keeps the times in better order was perhaps meant, with cells damaged.
-  const rivals = [...best.slice(1), ...fits.filter((f) => f.read < most && f.backward < winner.backward)];
+  const rivals = [
+    ...best.slice(1),
+    ...fits.filter((f) => f.read < most && f.read > NEARLY_ALL * most && f.backward < winner.backward),
+  ];
   const unlike = rivals.filter((f) => f.print !== winner.print);
   if (unlike.length > 0)
     return {

@@ -108,10 +108,10 @@ export class LogRows {
     const { log, rows, request } = this;
     const { name } = log.file;
     const said: Diagnostic[] = this.damage === null ? [] : [this.damage];
-    for (const { value, channel, count, firstLines } of this.reader.suspects.values())
-      said.push(
-        logProblems.suspectCode(name, request.channels[channel]!.column, value, count, firstLines[0]!),
-      );
+    this.reader.suspects.forEach((codes, c) => {
+      for (const { value, count, firstLines } of codes.suspects())
+        said.push(logProblems.suspectCode(name, request.channels[c]!.column, value, count, firstLines[0]!));
+    });
     if (rows.used + rows.merged > 0) {
       const aside = rows.read - rows.used - rows.merged;
       if (aside > MANY_ASIDE * rows.read)

@@ -52,7 +52,7 @@ export class NumberReader {
 
 function groupedNumber(thousandsSign: string, decimalSign: string): RegExp {
   const group = `\\u{${thousandsSign.codePointAt(0)!.toString(16)}}`;
-  return new RegExp(`^[+-]?\\d{1,3}(?:${group}\\d{3})+(?:[${decimalSign}]\\d*)?$`, "u");
+  return new RegExp(`^[+-]?[1-9]\\d{0,2}(?:${group}\\d{3})+(?:[${decimalSign}]\\d*)?$`, "u");
 }
 
 /**
@@ -108,7 +108,9 @@ interface Evidence {
 }
 
 function findSigns(name: string, cells: readonly SampleCell[], layout: LogLayout): Signs {
-  const other = cells.find(({ cell }) => /^[+-]?\d{1,3}(?:['’\u00a0\u202f]\d{3})+(?:[.,]\d*)?$/u.test(cell));
+  const other = cells.find(({ cell }) =>
+    /^[+-]?[1-9]\d{0,2}(?:['’\u00a0\u202f]\d{3})+(?:[.,]\d*)?$/u.test(cell),
+  );
   const thousands =
     layout.thousandsSign ?? (other === undefined ? null : /['’\u00a0\u202f]/u.exec(other.cell)![0]);
   if (layout.decimalSign !== undefined) {
@@ -130,7 +132,7 @@ function findSigns(name: string, cells: readonly SampleCell[], layout: LogLayout
     if (comma.weak === 0 && point.weak > 0) return signs(".", point.grouped);
     if (point.weak === 0 && comma.weak > 0) return signs(",", comma.grouped);
     if (point.weak === 0 && comma.weak === 0) {
-      const doubtful = cells.find(({ cell }) => /^[+-]?\d{1,3},\d{3}$/.test(cell));
+      const doubtful = cells.find(({ cell }) => /^[+-]?[1-9]\d{0,2},\d{3}$/.test(cell));
       if (doubtful === undefined) return signs(".", false);
       throw logProblems.decimalSignUnclear(name, doubtful.cell, doubtful.line);
     }

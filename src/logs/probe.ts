@@ -8,7 +8,7 @@ import { logProblems } from "./log-problems.ts";
 import { MissingCodes } from "./missing-codes.ts";
 import { countNoteRows, type SampleRow } from "./note-rows.ts";
 import { findNumberFormat, type NumberFormat } from "./number-format.ts";
-import { RecordSplitter } from "./record-splitter.ts";
+import { type RecordBatch, RecordSplitter } from "./record-splitter.ts";
 import type { LogFile, ReadRequest, TimeForm } from "./rows.ts";
 import type { Encoding } from "./text-decoding.ts";
 import { TimeReader } from "./time-reader.ts";
@@ -113,11 +113,15 @@ function sampleRows(head: LogHead, separator: string, fromLine: number): SampleR
     onRefused: (line) => rows.push({ line, cells: [] }),
     onComment: () => {},
   });
-  for (const batch of [splitter.push(Buffer.from(head.text)), splitter.end()])
-    if (batch !== null)
-      cellsOf(batch, separator).forEach((cells, i) => {
-        rows.push({ line: batch.lines[i]!, cells: cells ?? [] });
-      });
+  const take = (batch: RecordBatch | null): void => {
+    if (batch === null) return;
+    cellsOf(batch, separator).forEach((cells, i) => {
+      rows.push({ line: batch.lines[i]!, cells: cells ?? [] });
+    });
+  };
+  // A batch is valid only until the splitter is asked again.
+  take(splitter.push(Buffer.from(head.text)));
+  take(splitter.end());
   return rows.sort((a, b) => a.line - b.line);
 }
 

@@ -54,7 +54,8 @@ export class RecordSplitter {
   blankLines = 0;
   private readonly options: SplitOptions;
   private readonly separator: number;
-  private buffer: Buffer = Buffer.allocUnsafe(2 * BATCH_BYTES);
+  /** Taken only while the log is being read: a series may have thousands of logs. */
+  private buffer: Buffer = Buffer.alloc(0);
   private length = 0;
   private position = 0;
   /** End of the accepted records, which lie packed at the start of the buffer. */
@@ -95,7 +96,12 @@ export class RecordSplitter {
     }
     const before = this.lines.length;
     if (this.recordStart < this.length || this.skipping) this.closeRecord(this.length);
-    return this.lines.length > 0 ? this.take(this.lines.length > before) : null;
+    const batch = this.lines.length > 0 ? this.take(this.lines.length > before) : null;
+    this.buffer = Buffer.alloc(0);
+    this.length = 0;
+    this.position = 0;
+    this.recordStart = 0;
+    return batch;
   }
 
   private take(cut: boolean): RecordBatch {
@@ -117,7 +123,7 @@ export class RecordSplitter {
     }
     const needed = this.length + chunk.length;
     if (needed > this.buffer.length) {
-      const larger = Buffer.allocUnsafe(Math.max(needed, 2 * this.buffer.length));
+      const larger = Buffer.allocUnsafe(Math.max(needed, 2 * this.buffer.length, 2 * BATCH_BYTES));
       this.buffer.copy(larger, 0, 0, this.length);
       this.buffer = larger;
     }

@@ -22,9 +22,10 @@ export class ReorderBuffer {
   private readonly channels: number;
   private readonly lateBy_us: number;
   private readonly account: RowAccount;
-  private times: Float64Array = new Float64Array(2 * LEAST_ROWS);
-  private lines: Float64Array = new Float64Array(2 * LEAST_ROWS);
-  private moved = new Uint8Array(2 * LEAST_ROWS);
+  /** Empty until the first row comes and after the last one has gone: a series may have thousands of logs. */
+  private times: Float64Array = new Float64Array(0);
+  private lines: Float64Array = new Float64Array(0);
+  private moved = new Uint8Array(0);
   private columns: Float64Array[];
   private count = 0;
   private held = 0;
@@ -35,7 +36,7 @@ export class ReorderBuffer {
     this.channels = channels;
     this.lateBy_us = lateBy_us;
     this.account = account;
-    this.columns = Array.from({ length: channels }, () => new Float64Array(2 * LEAST_ROWS));
+    this.columns = Array.from({ length: channels }, () => new Float64Array(0));
   }
 
   /** @param time  not more than `lateBy_us` behind the newest one */
@@ -59,20 +60,25 @@ export class ReorderBuffer {
       : firstAtOrAfter(this.times, 0, this.count, this.newest_us - this.lateBy_us);
     const rows = this.resolve(settled);
     this.drop(settled);
+    if (final) this.resize(0);
     return rows.count === 0 ? null : rows;
   }
 
   private grow(): void {
-    const wider = (from: Float64Array): Float64Array => {
-      const to = new Float64Array(2 * from.length);
-      to.set(from);
+    this.resize(Math.max(2 * LEAST_ROWS, 2 * this.times.length));
+  }
+
+  private resize(length: number): void {
+    const resized = (from: Float64Array): Float64Array => {
+      const to = new Float64Array(length);
+      to.set(from.subarray(0, length));
       return to;
     };
-    this.times = wider(this.times);
-    this.lines = wider(this.lines);
-    this.columns = this.columns.map(wider);
-    const moved = new Uint8Array(2 * this.moved.length);
-    moved.set(this.moved);
+    this.times = resized(this.times);
+    this.lines = resized(this.lines);
+    this.columns = this.columns.map(resized);
+    const moved = new Uint8Array(length);
+    moved.set(this.moved.subarray(0, length));
     this.moved = moved;
   }
 

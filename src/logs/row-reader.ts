@@ -7,18 +7,12 @@ import { type ProbedLog, timeReader } from "./probe.ts";
 import type { ReorderBuffer } from "./reorder-buffer.ts";
 import { noteLine, setAside } from "./row-account.ts";
 import type { ReadRequest, RowAccount } from "./rows.ts";
-import { isSuspectCode } from "./suspect-codes.ts";
+import { SuspectCodes } from "./suspect-codes.ts";
 import type { TimeReader } from "./time-reader.ts";
 
 export interface Tally {
   count: number;
   readonly firstLines: number[];
-}
-
-/** A number that looks like a code for a missing value but is not listed as one. */
-export interface SuspectTally extends Tally {
-  readonly value: number;
-  readonly channel: number;
 }
 
 /** Reads records as rows: time and values, or a reason to set the row aside. */
@@ -27,7 +21,7 @@ export class RowReader {
   readonly comments: Tally = { count: 0, firstLines: [] };
   readonly backwardSteps: Tally = { count: 0, firstLines: [] };
   readonly newNames: Tally = { count: 0, firstLines: [] };
-  readonly suspects = new Map<string, SuspectTally>();
+  readonly suspects: readonly SuspectCodes[];
   private columns: Columns | null;
   private readonly originalNames: readonly string[];
   private readonly timeNames: readonly string[];
@@ -37,8 +31,6 @@ export class RowReader {
   private readonly gate: ClockGate;
   private readonly account: RowAccount;
   private readonly values: Float64Array;
-  /** Last value of each channel that does not look like a missing code. */
-  private readonly before: Float64Array;
   private readonly clockSetLine: number;
   private previous_us = Number.NEGATIVE_INFINITY;
 
@@ -53,7 +45,7 @@ export class RowReader {
     this.numbers = new NumberReader(log.numbers);
     this.account = account;
     this.values = new Float64Array(request.channels.length);
-    this.before = new Float64Array(request.channels.length).fill(Number.NaN);
+    this.suspects = request.channels.map(() => new SuspectCodes());
     this.gate = new ClockGate(request.lateBy_us, {
       pass: (time, line, values) => buffer.add(time, line, values),
       setAside: (reason, line) => setAside(account, reason, line),
@@ -139,8 +131,8 @@ export class RowReader {
       } else {
         values[c] = value;
         kept = true;
-        if (isSuspectCode(value)) this.suspect(value, c, line);
-        else this.before[c] = value;
+        const suspect = this.suspects[c]!.watch(value);
+        if (suspect !== null) noteLine(suspect, line);
       }
     }
     if (time < this.previous_us) noteLine(this.backwardSteps, line);
@@ -148,17 +140,5 @@ export class RowReader {
     if (unreadable && !kept) setAside(account, "no-readable-value", line);
     else if (line < this.clockSetLine) setAside(account, "stray-time", line);
     else this.gate.add(time, line, values);
-  }
-
-  /** A counter that passes 9999 on its way is no code: what stands before it is near. */
-  private suspect(value: number, channel: number, line: number): void {
-    if (Math.abs(value - this.before[channel]!) <= 0.1 * Math.abs(value)) {
-      this.before[channel] = value;
-      return;
-    }
-    const key = `${channel} ${value}`;
-    const tally = this.suspects.get(key) ?? { value, channel, count: 0, firstLines: [] };
-    this.suspects.set(key, tally);
-    noteLine(tally, line);
   }
 }

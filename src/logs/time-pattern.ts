@@ -69,6 +69,10 @@ const SYMBOLS: Record<string, (count: number) => Symbol_ | null> = {
   z: () => ({ field: "offset" }),
 };
 
+/** A series of logs asks for the same patterns again and again. */
+const compiled = new Map<string, TimePattern | string>();
+const COMPILED_KEPT = 1000;
+
 /** A pattern that was understood. */
 export class TimePattern {
   readonly hasDate: boolean;
@@ -92,6 +96,15 @@ export class TimePattern {
    * @returns the pattern, or a sentence that says what is wrong with it
    */
   static compile(pattern: string, pivot: number): TimePattern | string {
+    const key = `${pivot} ${pattern}`;
+    const known = compiled.get(key);
+    if (known !== undefined) return known;
+    const made = TimePattern.make(pattern, pivot);
+    if (compiled.size < COMPILED_KEPT) compiled.set(key, made);
+    return made;
+  }
+
+  private static make(pattern: string, pivot: number): TimePattern | string {
     const groups: Symbol_[][] = [];
     let source = "";
     let run: Symbol_[] = [];
