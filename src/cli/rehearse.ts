@@ -5,6 +5,7 @@ import { asDiagnostic, planPipeline } from "../pipeline/plan.ts";
 import { parseDuration } from "../pipeline/quantities.ts";
 import { accountText, designAccount } from "../report/account.ts";
 import type { StageAccount } from "../report/account-format.ts";
+import { type Advice, adviseOnMeans, type Candidate } from "../report/adviser.ts";
 import { STAGES } from "../stages/registry.ts";
 import { checkRemoved, type Streams } from "./clean.ts";
 import { DONE, NOT_MET, WRONG } from "./exit-codes.ts";
@@ -32,7 +33,7 @@ export function rehearse(path: string, options: RehearseOptions, streams: Stream
     streams.out(
       options.json === true
         ? accountText(design)
-        : `${designText(loaded.pipeline.name, loaded.pipeline.about, design)}\n`,
+        : `${designText(loaded.pipeline.name, loaded.pipeline.about, design, adviseOnMeans(plan))}\n`,
     );
     return design.requirements.every((r) => r.met) ? DONE : NOT_MET;
   } catch (error) {
@@ -59,7 +60,12 @@ function intervalOf(text: string): number {
 
 type Design = ReturnType<typeof designAccount>;
 
-function designText(name: string, about: string | undefined, design: Design): string {
+function designText(
+  name: string,
+  about: string | undefined,
+  design: Design,
+  advice: readonly Advice[],
+): string {
   const lines = [about === undefined ? name : wrap(`${name}: ${about}`, 80), ""];
   lines.push(
     table([
@@ -89,7 +95,10 @@ function designText(name: string, about: string | undefined, design: Design): st
       80,
     ),
   );
-  for (const s of design.stages) lines.push("", ...stageText(s));
+  for (const s of design.stages) {
+    lines.push("", ...stageText(s));
+    for (const a of advice) if (a.place === s.place) lines.push(...adviceText(a));
+  }
   if (design.requirements.length > 0) {
     lines.push("", "requirements");
     for (const r of design.requirements)
@@ -137,4 +146,30 @@ function stageText(s: StageAccount): string[] {
       `  ${figure(f.frequency_Hz)} Hz would land at ${frequencyText(f.lands_at_Hz)}, ${figure(f.gain_dB)} dB`,
     );
   return lines;
+}
+
+function adviceText({ remarks, mean, sameNoise, sameDelay }: Advice): string[] {
+  const row = (what: string, c: Candidate) => [
+    what,
+    String(c.taps),
+    timeText(c.delay_s, 3),
+    frequencyText(c.noiseBandwidth_Hz, false),
+    frequencyText(c.f3_Hz, false),
+    figure(c.beyondNull_dB, 3),
+    figure(c.overshoot_pct, 2),
+  ];
+  const side = table([
+    ["", "taps", "delay", "noise bw", "-3 dB at", "beyond, dB", "overshoot, %"],
+    row("this mean", mean),
+    row("same noise", sameNoise),
+    row("same delay", sameDelay),
+  ]);
+  return [
+    "  what a mean does badly:",
+    ...remarks.map((r) => wrap(`  - ${r}`, 80, "    ")),
+    "  designed filters beside it (beyond: highest gain above the mean's first null):",
+    ...side.split("\n").map((line) => `    ${line}`),
+    wrap(`  same noise bandwidth: ${sameNoise.write}`, 80, "    "),
+    wrap(`  same delay: ${sameDelay.write}`, 80, "    "),
+  ];
 }

@@ -7,9 +7,10 @@ import { filterFigures } from "../signal/filter-figures.ts";
 import { foldedFrequency } from "../signal/fold.ts";
 import { intervalSeconds } from "../signal/grid.ts";
 import type { AliasAccount, ChannelAccount, StageAccount } from "./account-format.ts";
+import { turnedPower_pct } from "./adviser.ts";
 import { channelAccount, counted, unmeasured } from "./channel-account.ts";
 import { stageGain } from "./requirements.ts";
-import { decibels } from "./spectrum-account.ts";
+import { decibels, densities } from "./spectrum-account.ts";
 
 const RESPONSE_POINTS = 400;
 const MAINS_Hz = [50, 60];
@@ -96,6 +97,8 @@ export function stageAccount(
     const learned = results[c]!.learned.get(index);
     if (learned !== undefined) trends[channel.name] = planned.design.learnedNotes?.(learned, channel.unit);
   }
+  const turned = turnedPower(planned, results, index, plan);
+  if (turned !== null) notes["power_turned_upside_down_pct"] = turned;
   if (Object.keys(trends).length > 0) notes["trend"] = trends;
   const first = results[0]!;
   const before = index === 0 ? first.gridCounts.samples : first.measures[index - 1]!.counts.samples;
@@ -155,6 +158,25 @@ export function gridStageAccount(
     channels,
     notes: { ...account.notes, interpolation: effect },
   };
+}
+
+/** For an equal mean: share of each channel's power where it turns the phase round. */
+function turnedPower(
+  planned: PlannedStage,
+  results: readonly ChannelResult[],
+  index: number,
+  plan: Plan,
+): Record<string, number> | null {
+  const { taps } = planned.design;
+  if (planned.stage !== "moving-average" || taps === null || !taps.every((w) => w === taps[0])) return null;
+  const found: Record<string, number> = {};
+  for (const [c, channel] of plan.channels.entries()) {
+    const { spectra, cross } = results[c]!.measures[index]!;
+    const d = spectra === null || cross === null ? null : densities(spectra.plan, cross);
+    if (d !== null)
+      found[channel.name] = turnedPower_pct(d, taps.length, intervalSeconds(planned.signalIn.grid!));
+  }
+  return Object.keys(found).length === 0 ? null : found;
 }
 
 const shares = (interval_s: number) =>
