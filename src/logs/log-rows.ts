@@ -99,6 +99,8 @@ export class LogRows {
       ["names that changed on the way", reader.newNames, "; the columns were found again by name"],
     ];
     for (const [words, tally, rest] of tallies) if (tally.count > 0) found[words] = inWords(tally) + rest;
+    if (log.clockSetLine > 0)
+      found["clock set"] = `at line ${log.clockSetLine}; the rows above it count from a lost date`;
     Object.assign(found, reader.times.remarks());
     return { file: log.file.name, bytes: this.bytes, sha256: this.sha256, rows, found };
   }

@@ -90,7 +90,10 @@ export interface RowAccount {
   readonly setAside: Map<string, SetAside>;
   /** Rows that came late but within the horizon and were put in their place. */
   reordered: { count: number; readonly firstLines: number[] };
-  /** Per channel: cells that are empty or a missing code, and cells that could not be read as a number. */
+  /**
+   * Per channel: cells that are empty or a missing code, and cells that could not be read as a number; counted in
+   * every row whose time was read, whatever became of the row.
+   */
   readonly missingCells: number[];
   readonly unreadableCells: { count: number; readonly firstLines: number[] }[];
 }
