@@ -155,11 +155,11 @@ function adviceText({ remarks, mean, sameNoise, sameDelay }: Advice): string[] {
     timeText(c.delay_s, 3),
     frequencyText(c.noiseBandwidth_Hz, false),
     frequencyText(c.f3_Hz, false),
-    figure(c.beyondNull_dB, 3),
+    figure(c.sideLobe_dB, 3),
     figure(c.overshoot_pct, 2),
   ];
   const side = table([
-    ["", "taps", "delay", "noise bw", "-3 dB at", "beyond, dB", "overshoot, %"],
+    ["", "taps", "delay", "noise bw", "-3 dB at", "side lobe, dB", "overshoot, %"],
     row("this mean", mean),
     row("same noise", sameNoise),
     row("same delay", sameDelay),
@@ -167,7 +167,7 @@ function adviceText({ remarks, mean, sameNoise, sameDelay }: Advice): string[] {
   return [
     "  what a mean does badly:",
     ...remarks.map((r) => wrap(`  - ${r}`, 80, "    ")),
-    "  designed filters beside it (beyond: highest gain above the mean's first null):",
+    "  designed filters beside it:",
     ...side.split("\n").map((line) => `    ${line}`),
     wrap(`  same noise bandwidth: ${sameNoise.write}`, 80, "    "),
     wrap(`  same delay: ${sameDelay.write}`, 80, "    "),

@@ -6,8 +6,8 @@
  */
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
 import { filterFigures, meanGain } from "../signal/filter-figures.ts";
+import { gainAtBins } from "../signal/gain-at-bins.ts";
 import { intervalSeconds } from "../signal/grid.ts";
-import { peakGain } from "../signal/response.ts";
 import { designWindowedSinc } from "../signal/windowed-sinc.ts";
 import { type Densities, decibels } from "./spectrum-account.ts";
 
@@ -18,8 +18,8 @@ export interface Candidate {
   readonly delay_s: number;
   readonly noiseBandwidth_Hz: number;
   readonly f3_Hz: number | null;
-  /** Highest gain from the mean's first null on. */
-  readonly beyondNull_dB: number;
+  /** Highest gain beyond the filter's own first minimum. */
+  readonly sideLobe_dB: number;
   readonly overshoot_pct: number;
 }
 
@@ -73,7 +73,7 @@ function advise(planned: PlannedStage): Advice {
       delay_s: ((taps.length - 1) / 2) * interval,
       noiseBandwidth_Hz: hz(f.noiseBandwidth),
       f3_Hz: f.f3[0] === undefined ? null : hz(f.f3[0]),
-      beyondNull_dB: decibels(peakGain(taps, Math.min(0.5, 1 / n), 0.5).gain),
+      sideLobe_dB: decibels(highestSideLobe(taps)),
       overshoot_pct: (f.overshoot ?? 0) * 100,
     };
   };
@@ -90,7 +90,7 @@ function advise(planned: PlannedStage): Advice {
     remarks,
     mean: figuresOf(planned.design.taps!, `{ stage: moving-average, points: ${n} }`),
     sameNoise: figuresOf(low(long, edge), write(long, edge)),
-    sameDelay: figuresOf(low(short, 1 / n), write(short, 1 / n)),
+    sameDelay: figuresOf(low(short, 0.5 / n), write(short, 0.5 / n)),
   };
 }
 
@@ -109,6 +109,16 @@ function edgeForNoise(taps: number, bandwidth: number): number {
     else to = middle;
   }
   return Number(((from + to) / 2).toPrecision(4));
+}
+
+/** Highest |H| beyond its first minimum, on 32 points a tap. */
+function highestSideLobe(taps: Float64Array): number {
+  const gains = gainAtBins(taps, 2 ** Math.ceil(Math.log2(64 * taps.length)));
+  let k = 1;
+  while (k < gains.length - 1 && gains[k]! <= gains[k - 1]!) k++;
+  let highest = 0;
+  for (; k < gains.length; k++) highest = Math.max(highest, gains[k]!);
+  return highest;
 }
 
 function firstSideLobe(n: number): { gain: number; frequency: number } {
