@@ -115,7 +115,8 @@ function edgeForNoise(taps: number, bandwidth: number): number {
 function highestSideLobe(taps: Float64Array): number {
   const gains = gainAtBins(taps, 2 ** Math.ceil(Math.log2(64 * taps.length)));
   let k = 1;
-  while (k < gains.length - 1 && gains[k]! <= gains[k - 1]!) k++;
+  // Ripple in the passband has minima too: the first one below -20 dB is meant.
+  while (k < gains.length - 1 && (gains[k]! > 0.1 * gains[0]! || gains[k]! <= gains[k - 1]!)) k++;
   let highest = 0;
   for (; k < gains.length; k++) highest = Math.max(highest, gains[k]!);
   return highest;
