@@ -8,10 +8,11 @@
  * Exact: for independent bins of Gaussian noise of even density, and segments that do not overlap, the chance
  * of a false tone in the whole spectrum is at most `falseAlarm`; the median's bias and its own spread are
  * counted in full.
- * Approximate: the heavier tail that overlapping segments give (within some per cent, overlap-tail.ts); the likeness of neighbouring bins that a window makes is counted as fewer independent
- * neighbours (fewer by sum of the bins' squared correlations); a sloping spectrum shifts the median a little;
- * a hump narrower than some 20 bins counts as a line. The tone's amplitude assumes the floor at the peak for
- * the whole main lobe, and with a flat window misses what leaks beyond it (up to 10 %, others below 1 %).
+ * Approximate: the heavier tail that overlapping segments give (within a few per cent, overlap-tail.ts); the
+ * likeness that a window makes between neighbouring bins, counted as fewer independent neighbours (fewer by
+ * the sum of the bins' squared correlations); a sloping spectrum shifts the median a little; a hump narrower
+ * than some 20 bins counts as a line. The tone's amplitude assumes the peak's floor for the whole main lobe,
+ * and with a flat window misses what leaks beyond it (up to 10 %, with other windows below 2 %).
  * References: R. B. Blackman & J. W. Tukey (1958), The Measurement of Power Spectra; M. Gasior & J. L.
  * Gonzalez (2004), AIP Conference Proceedings 732, 276-285 (parabola through logarithms). Recalled from memory.
  */
