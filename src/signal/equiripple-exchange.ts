@@ -139,7 +139,7 @@ function stretched(shorter: Float64Array, count: number, bands: readonly DesignB
       const place = t * (known.length - 1);
       const i = Math.min(known.length - 2, Math.floor(place));
       const angle = known[i]! + (place - i) * (known[i + 1]! - known[i]!);
-      return Math.min(band.to, band.from + (band.to - band.from) * Math.sin(angle / 2) ** 2);
+      return band.from + (band.to - band.from) * Math.sin(angle / 2) ** 2;
     },
   );
 }
@@ -162,7 +162,8 @@ function spread(
     const n = shares[b]!;
     // The Nyquist frequency is no place for an even length, whose amplitude is zero there whatever one does.
     const end = band.to === 0.5 ? 1 - 1 / (4 * count) : 1;
-    for (let i = 0; i < n; i++) points.push(place(band, n === 1 ? 0.5 : (i / (n - 1)) * end, b));
+    for (let i = 0; i < n; i++)
+      points.push(Math.min(band.to, place(band, n === 1 ? 0.5 : (i / (n - 1)) * end, b)));
   }
   return Float64Array.from(points);
 }

@@ -35,9 +35,26 @@ export interface EquirippleFilter {
  * @throws DesignError for impossible bands, and when the optimum cannot be proved on the taps within 1e-6
  */
 export function designEquiripple(taps: number, bands: readonly DesignBand[]): EquirippleFilter {
+  const made = measuredEquiripple(taps, bands);
+  if (made === null) throw notProved(taps, "the exchange broke down");
+  const { deviation, lowerBound } = made;
+  const rounding = roundingOf(made.taps, bands);
+  if (!(deviation - lowerBound <= PROVED * deviation + rounding && deviation > rounding))
+    throw notProved(
+      taps,
+      `a deviation of ${deviation.toPrecision(4)} with a lower bound of ${lowerBound.toPrecision(4)}`,
+    );
+  return made;
+}
+
+/**
+ * The same without proof, for searches that verify the response by other means; null when the exchange breaks down.
+ * @throws DesignError for impossible bands
+ */
+export function measuredEquiripple(taps: number, bands: readonly DesignBand[]): EquirippleFilter | null {
   refuseImpossibleBands(taps, MOST_EQUIRIPPLE_TAPS, bands);
   const found = exchange(taps, bands);
-  if (found === null) throw notProved(taps, "the exchange broke down");
+  if (found === null) return null;
   const h = tapsThrough(taps, found);
   const error = (f: number, b: number) => bands[b]!.weight * (amplitudeAt(h, f) - wantedGain(bands[b]!, f));
   const extremes = alternatingExtremes(error, proofPoints(taps, found.reference, bands));
@@ -45,21 +62,20 @@ export function designEquiripple(taps: number, bands: readonly DesignBand[]): Eq
   const deviation = Math.max(0, ...sizes);
   const needed = Math.ceil(taps / 2) + 1;
   const proof = strongest(extremes, needed);
-  const lowerBound = proof.length < needed ? 0 : Math.min(...proof.map((e) => Math.abs(e.error)));
-  const heaviest = Math.max(...bands.map((b) => b.weight));
-  const rounding = 32 * Number.EPSILON * heaviest * h.reduce((sum, x) => sum + Math.abs(x), 1);
-  if (!(deviation - lowerBound <= PROVED * deviation + rounding && deviation > rounding))
-    throw notProved(
-      taps,
-      `a deviation of ${deviation.toPrecision(4)} with a lower bound of ${lowerBound.toPrecision(4)}`,
-    );
+  const reached = (1 - PROVED) * deviation - roundingOf(h, bands);
   return {
     taps: h,
     deviation,
-    lowerBound,
-    alternations: sizes.filter((s) => s >= (1 - PROVED) * deviation).length,
+    lowerBound: proof.length < needed ? 0 : Math.min(...proof.map((e) => Math.abs(e.error))),
+    alternations: sizes.filter((s) => s >= reached).length,
     largestDontCareGain: largestDontCareGain(h, bands).gain,
   };
+}
+
+/** Weighted error that rounding of the sums alone can make. */
+function roundingOf(taps: Float64Array, bands: readonly DesignBand[]): number {
+  const heaviest = Math.max(...bands.map((b) => b.weight));
+  return 32 * Number.EPSILON * heaviest * taps.reduce((sum, x) => sum + Math.abs(x), 1);
 }
 
 function notProved(taps: number, reached: string): DesignError {

@@ -6,10 +6,10 @@
  * Proceedings of the AMS 4, 502-506 (golden-section search). Recalled from memory.
  */
 import { DesignError } from "./design-error.ts";
+import { DOUBT, edgeSides, worstExcess } from "./edge-excess.ts";
 import { kaiserBeta, kaiserTaps } from "./kaiser.ts";
-import { amplitudeAt } from "./linear-phase.ts";
-import { type Achieved, achievedBy, bandsOf, keeps, limitsOf, type Mask, transitionWidth } from "./mask.ts";
-import { shortestLength } from "./shortest-length.ts";
+import { type Achieved, achievedBy, keeps, limitsOf, type Mask, transitionWidth } from "./mask.ts";
+import { type Lengths, shortestLength } from "./shortest-length.ts";
 import { designWindowedSinc } from "./windowed-sinc.ts";
 
 export interface KaiserFilter {
@@ -19,7 +19,7 @@ export interface KaiserFilter {
 }
 
 /** Null when no length up to `most` keeps the mask. */
-export function shortestKaiser(mask: Mask, step: 1 | 2, most: number): KaiserFilter | null {
+export function shortestKaiser(mask: Mask, lengths: Lengths, most: number): KaiserFilter | null {
   const { leak, lowest } = limitsOf(mask);
   const attenuation = -20 * Math.log10(Math.min(leak, 1 - lowest));
   const estimate = kaiserTaps(Math.max(21, attenuation), transitionWidth(mask));
@@ -32,16 +32,17 @@ export function shortestKaiser(mask: Mask, step: 1 | 2, most: number): KaiserFil
       throw error;
     }
   };
-  return shortestLength(attempt, { estimate, step, most });
+  return shortestLength(attempt, { estimate, lengths, most, failuresInRow: FAILURES_IN_ROW });
 }
+
+/** Lobes that move past an edge make one length fail and a shorter one succeed, over a few lengths. */
+const FAILURES_IN_ROW = 4;
 
 /** How far around Kaiser's beta the best one is sought. */
 const BETA_BELOW = 2.5;
 const BETA_ABOVE = 2;
 const GOLDEN = (Math.sqrt(5) - 1) / 2;
 const BETA_PRECISION = 0.003;
-/** Doubt of the excess near the edges, from the parabolas through its points. */
-const DOUBT = 0.001;
 
 /** The design of one length, if some beta keeps the mask. */
 function bestOfLength(mask: Mask, n: number, nearBeta: number): KaiserFilter | null {
@@ -50,10 +51,7 @@ function bestOfLength(mask: Mask, n: number, nearBeta: number): KaiserFilter | n
   const design = (beta: number) =>
     designWindowedSinc({ taps: n, shape: mask.shape, edges, window: "kaiser", beta });
   /** How many times too large the worst deviation near the edges is. */
-  const excess = (beta: number): number => {
-    const taps = design(beta);
-    return Math.max(...sides.map((side) => worstOf(side, taps)));
-  };
+  const excess = (beta: number): number => worstExcess(sides, design(beta));
   const verified = (beta: number): KaiserFilter | null => {
     const taps = design(beta);
     const achieved = achievedBy(taps, mask);
@@ -85,49 +83,4 @@ function bestOfLength(mask: Mask, n: number, nearBeta: number): KaiserFilter | n
   }
   if (Math.min(atC, atD) < 1 + DOUBT) return verified(atC < atD ? c : d);
   return low === 0 && excess(0) < 1 + DOUBT ? verified(0) : null;
-}
-
-/** Evenly spaced frequencies from an edge into its band, over the first lobes: the worst deviation lies there. */
-interface EdgeSide {
-  readonly frequencies: readonly number[];
-  /** Deviation of an amplitude in this band, as a multiple of what is allowed. */
-  readonly excessOf: (amplitude: number) => number;
-}
-
-const POINTS_PER_LOBE = 16;
-const LOBES = 3;
-
-function edgeSides(mask: Mask, n: number): EdgeSide[] {
-  const { lowest, highest, leak } = limitsOf(mask);
-  const passes = (a: number) => Math.max((a - 1) / (highest - 1), (1 - a) / (1 - lowest));
-  const stops = (a: number) => Math.abs(a) / leak;
-  const { pass, stop } = bandsOf(mask);
-  const sides: EdgeSide[] = [];
-  for (const [bands, edges, excessOf] of [
-    [pass, mask.pass, passes],
-    [stop, mask.stop, stops],
-  ] as const)
-    for (const [from, to] of bands)
-      for (const edge of [from, to]) {
-        if (!edges.includes(edge)) continue;
-        const inward = edge === from ? 1 : -1;
-        const all = Array.from(
-          { length: LOBES * POINTS_PER_LOBE + 1 },
-          (_, i) => edge + (inward * i) / (POINTS_PER_LOBE * n),
-        );
-        sides.push({ frequencies: all.filter((f) => f >= from && f <= to), excessOf });
-      }
-  return sides;
-}
-
-/** Largest excess on one side, between its points too: each inner maximum by the parabola through three of them. */
-function worstOf({ frequencies, excessOf }: EdgeSide, taps: Float64Array): number {
-  const e = frequencies.map((f) => excessOf(amplitudeAt(taps, f)));
-  let worst = 0;
-  for (let i = 0; i < e.length; i++) {
-    worst = Math.max(worst, e[i]!);
-    const [a, b, c] = [e[i - 1] ?? Number.NaN, e[i]!, e[i + 1] ?? Number.NaN];
-    if (b > a && b >= c) worst = Math.max(worst, b + (a - c) ** 2 / (8 * (2 * b - a - c)));
-  }
-  return worst;
 }

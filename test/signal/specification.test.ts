@@ -1,24 +1,36 @@
 import { describe, expect, it } from "vitest";
 import { DesignError } from "../../src/signal/design-error.ts";
+import { designEquiripple } from "../../src/signal/equiripple.ts";
+import { weightedBands } from "../../src/signal/equiripple-search.ts";
+import { designLeastSquares } from "../../src/signal/least-squares.ts";
 import { keeps, type Mask } from "../../src/signal/mask.ts";
-import { symmetryOf } from "../../src/signal/response.ts";
-import { achievedBy, designBySpecification } from "../../src/signal/specification.ts";
+import { gainAt, symmetryOf } from "../../src/signal/response.ts";
+import { achievedBy, designBySpecification, type Specification } from "../../src/signal/specification.ts";
 import { designWindowedSinc } from "../../src/signal/windowed-sinc.ts";
 import { onDenseGrid, randomMask, shapes } from "./masks.ts";
+
+/** The filter of a method, seen on a plain grid of 16 points a tap to keep its mask as it says. */
+function kept(mask: Mask, method: Specification["method"], parity: "odd" | "any" = "any") {
+  const made = designBySpecification({ ...mask, method, parity });
+  expect(symmetryOf(made.taps)).toBe("even");
+  const seen = onDenseGrid(made.taps, mask);
+  expect(seen.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
+  expect(seen.attenuation_dB).toBeGreaterThanOrEqual(mask.attenuation_dB);
+  // What is said to be achieved is what is seen, up to what lies between the points of the grid.
+  expect(made.achieved.ripple_dB).toBeGreaterThanOrEqual(seen.ripple_dB - 1e-9);
+  expect(made.achieved.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
+  expect(made.achieved.attenuation_dB).toBeLessThanOrEqual(seen.attenuation_dB + 1e-9);
+  expect(made.achieved.attenuation_dB).toBeGreaterThanOrEqual(mask.attenuation_dB);
+  expect(made.largestGain).toBeGreaterThanOrEqual(gainAt(made.taps, mask.pass[0]!) - 1e-12);
+  expect(made.why).toMatch(/^[^\n]+[^.]$/);
+  return made;
+}
 
 describe("by specification: windowed sinc", () => {
   it.each(shapes)("%s: keeps the mask, and no Kaiser window two taps shorter does", (shape) => {
     for (let i = 0; i < 12; i++) {
       const mask = randomMask(shape, 1000 + i);
-      const made = designBySpecification({ ...mask, method: "windowed-sinc" });
-      expect(symmetryOf(made.taps)).toBe("even");
-      const seen = onDenseGrid(made.taps, mask);
-      expect(seen.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
-      expect(seen.attenuation_dB).toBeGreaterThanOrEqual(mask.attenuation_dB);
-      // What is said to be achieved is what is seen, up to what lies between the points of the grid.
-      expect(made.achieved.ripple_dB).toBeGreaterThanOrEqual(seen.ripple_dB - 1e-9);
-      expect(made.achieved.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
-      expect(made.achieved.attenuation_dB).toBeLessThanOrEqual(seen.attenuation_dB + 1e-9);
+      const made = kept(mask, "windowed-sinc");
       const edges = mask.pass.map((p, k) => (p + mask.stop[k]!) / 2);
       const n = made.taps.length - 2;
       for (let beta = Math.max(0, made.beta! - 2); n > 2 && beta < made.beta! + 2; beta += 0.05) {
@@ -28,7 +40,7 @@ describe("by specification: windowed sinc", () => {
     }
   });
 
-  it("odd lengths when asked", () => {
+  it("odd lengths when asked, even ones when shorter and allowed", () => {
     for (let i = 0; i < 10; i++)
       expect(
         designBySpecification({ ...randomMask("low-pass", i), method: "windowed-sinc", parity: "odd" }).taps
@@ -76,5 +88,121 @@ describe("by specification: windowed sinc", () => {
     });
     expect(made.taps.length).toBeGreaterThan(4000);
     expect(performance.now() - start).toBeLessThan(5000);
+  });
+});
+
+describe("by specification: equiripple", () => {
+  it.each(shapes)("%s: keeps the mask, and no filter two taps shorter can", (shape) => {
+    for (let i = 0; i < 10; i++) {
+      const mask = randomMask(shape, 2000 + i);
+      const made = kept(mask, "equiripple");
+      const n = made.taps.length;
+      expect(made.method).toBe("equiripple");
+      if (n <= 3) continue;
+      // A lower bound above 1 proves it for every filter of that length and symmetry, by whatever method.
+      expect(designEquiripple(n - 2, weightedBands(mask)).lowerBound, `${n - 2} taps`).toBeGreaterThan(1);
+      if (shape === "low-pass" || shape === "band-pass")
+        expect(designEquiripple(n - 1, weightedBands(mask)).lowerBound, `${n - 1} taps`).toBeGreaterThan(1);
+    }
+  });
+
+  it("is never longer than the other methods", () => {
+    for (let i = 0; i < 8; i++)
+      for (const shape of shapes) {
+        const mask = randomMask(shape, 3000 + i);
+        const least = kept(mask, "equiripple").taps.length;
+        for (const method of ["windowed-sinc", "least-squares"] as const)
+          expect(designBySpecification({ ...mask, method }).taps.length).toBeGreaterThanOrEqual(least);
+      }
+  });
+
+  it("warns when the gain runs free between the bands", () => {
+    const mask: Mask = {
+      shape: "band-pass",
+      pass: [0.15, 0.25],
+      stop: [0.13, 0.4],
+      ripple_dB: 0.5,
+      attenuation_dB: 40,
+    };
+    const made = kept(mask, "equiripple");
+    expect(made.largestGain).toBeGreaterThan(2);
+    expect(made.warning).toMatch(/dB above the passband/);
+    // auto does not take it, and says what it would have cost.
+    const calm = kept(mask, "auto");
+    expect(calm.largestGain).toBeLessThan(1.5);
+    expect(calm.warning).toBeUndefined();
+    expect(calm.why).toMatch(new RegExp(`${made.taps.length} taps would do`));
+    expect(calm.taps.length).toBeLessThan(kept(mask, "windowed-sinc").taps.length);
+  });
+});
+
+describe("by specification: least squares", () => {
+  it.each(shapes)("%s: keeps the mask, and no weighting two taps shorter does", (shape) => {
+    for (let i = 0; i < 8; i++) {
+      const mask = randomMask(shape, 4000 + i);
+      const made = kept(mask, "least-squares");
+      const n = made.taps.length - 2;
+      if (n < 1) continue;
+      const bands = weightedBands(mask);
+      for (let decades = -4; decades <= 10; decades += 0.1) {
+        const weighted = bands.map((b) => ({ ...b, weight: b.gain === 0 ? 10 ** decades : 1 }));
+        const shorter = designLeastSquares(n, weighted).taps;
+        expect(keeps(achievedBy(shorter, mask), mask), `${n} taps, weight 1e${decades}`).toBe(false);
+      }
+    }
+  });
+});
+
+describe("by specification: auto", () => {
+  it("takes the shortest, and says why in one sentence", () => {
+    for (let i = 0; i < 8; i++)
+      for (const shape of ["low-pass", "high-pass"] as const) {
+        const mask = randomMask(shape, 5000 + i);
+        const made = kept(mask, "auto");
+        const lengths = (["windowed-sinc", "equiripple", "least-squares"] as const).map(
+          (method) => designBySpecification({ ...mask, method }).taps.length,
+        );
+        expect(made.taps.length).toBe(Math.min(...lengths));
+        expect(made.why).toContain(`${made.taps.length} taps keep`);
+      }
+  });
+
+  it("takes a windowed sinc where equiripple would be too long", () => {
+    const mask: Mask = {
+      shape: "low-pass",
+      pass: [0.01],
+      stop: [0.011],
+      ripple_dB: 0.05,
+      attenuation_dB: 60,
+    };
+    const made = designBySpecification({ ...mask, method: "auto", parity: "odd" });
+    expect(made.method).toBe("windowed-sinc");
+    expect(made.why).toMatch(/no equiripple filter of up to 2001 taps/);
+    expect(() => designBySpecification({ ...mask, method: "equiripple" })).toThrow(/no equiripple filter/);
+    expect(() => designBySpecification({ ...mask, method: "least-squares" })).toThrow(
+      /no least-squares filter/,
+    );
+  });
+});
+
+describe("spectral masks over a grid of edges, transitions, attenuations and ripples", () => {
+  const grid = [0.05, 0.17, 0.31].flatMap((edge) =>
+    [0.03, 0.09].flatMap((width) =>
+      [20, 50, 80].flatMap((attenuation_dB) =>
+        [0.01, 0.5].map((ripple_dB) => ({ edge, width, attenuation_dB, ripple_dB })),
+      ),
+    ),
+  );
+  it.each(["windowed-sinc", "equiripple", "least-squares", "auto"] as const)("%s", (method) => {
+    // auto is one of the others: every third point shows that it is.
+    const points = method === "auto" ? grid.filter((_, i) => i % 3 === 0) : grid;
+    for (const { edge, width, ...limits } of points) {
+      kept({ shape: "low-pass", pass: [edge], stop: [edge + width], ...limits }, method);
+      kept({ shape: "high-pass", pass: [edge + width], stop: [edge], ...limits }, method);
+      const [a, b] = [0.02 + edge / 3, 0.02 + edge / 3 + width];
+      const [c, d] = [0.45 - width, 0.45];
+      kept({ shape: "band-pass", pass: [b, c], stop: [a, d], ...limits }, method);
+      kept({ shape: "band-stop", pass: [a, d], stop: [b, c], ...limits }, method, "odd");
+    }
   });
 });

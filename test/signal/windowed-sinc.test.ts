@@ -1,6 +1,6 @@
 import { describe, expect, it } from "vitest";
 import { DesignError } from "../../src/signal/design-error.ts";
-import { edgeFrequencies, gainAt, symmetryOf } from "../../src/signal/response.ts";
+import { edgeFrequencies, gainAt, lowestGain, peakGain, symmetryOf } from "../../src/signal/response.ts";
 import { designWindowedSinc, type FilterShape } from "../../src/signal/windowed-sinc.ts";
 import type { WindowKind } from "../../src/signal/windows.ts";
 import reference from "../reference/03-windowed-sinc-taps.json" with { type: "json" };
@@ -112,5 +112,35 @@ describe("windowed sinc", () => {
       { taps: 7, shape: "low-pass", edges: [Number.NaN], window: "hamming" },
     ] as const;
     for (const design of cases) expect(() => designWindowedSinc(design)).toThrow(DesignError);
+  });
+});
+
+describe("spectral masks of windowed sincs by size", () => {
+  // Peak approximation error of one sharp edge, and width of the main lobe times N - 1 in cycles/sample:
+  // Oppenheim & Schafer, Discrete-Time Signal Processing, table 7.2 (recalled from memory). A filter has each edge
+  // twice, at f and at -f, so the errors of two edges can add up.
+  const table: [WindowKind, number, number][] = [
+    ["rectangular", 21, 2],
+    ["triangular", 25, 4],
+    ["hann", 44, 4],
+    ["hamming", 53, 4],
+    ["blackman", 74, 6],
+  ];
+  it.each(table)("%s: %d dB beyond half its main lobe's width", (window, attenuation_dB, width) => {
+    for (const n of [31, 64, 101, 257])
+      for (const edge of [0.12, 0.25, 0.33]) {
+        const half = width / (2 * (n - 1));
+        if (edge - half <= 0.02 || edge + half >= 0.48) continue;
+        const low = designWindowedSinc({ taps: n, shape: "low-pass", edges: [edge], window });
+        const leak = 2 * 10 ** (-attenuation_dB / 20);
+        expect(peakGain(low, edge + half, 0.5).gain, `${n} ${edge}`).toBeLessThan(leak);
+        // The passband's own error, and that of the frequency at which the gain is set to 1.
+        expect(Math.abs(peakGain(low, 0, edge - half).gain - 1)).toBeLessThan(2.1 * leak);
+        expect(Math.abs(lowestGain(low, 0, edge - half).gain - 1)).toBeLessThan(2.1 * leak);
+        if (n % 2 === 0) continue;
+        const high = designWindowedSinc({ taps: n, shape: "high-pass", edges: [edge], window });
+        expect(peakGain(high, 0, edge - half).gain, `${n} ${edge}`).toBeLessThan(leak);
+        expect(Math.abs(lowestGain(high, edge + half, 0.5).gain - 1)).toBeLessThan(2.1 * leak);
+      }
   });
 });
