@@ -3,7 +3,16 @@
  * signal/kaiser.ts, signal/specification.ts.
  */
 import type { z } from "zod";
-import { count, decibels, finite, frequency, list, oneOf, stageSettings } from "../pipeline/kinds.ts";
+import {
+  count,
+  decibels,
+  finite,
+  frequency,
+  list,
+  oneOf,
+  stageSettings,
+  strictObject,
+} from "../pipeline/kinds.ts";
 import { halfStepLater, intervalSeconds } from "../signal/grid.ts";
 import { symmetryOf } from "../signal/response.ts";
 import { WindowKernel } from "../signal/window-kernel.ts";
@@ -37,7 +46,11 @@ const settings = stageSettings("fir", {
     max: 200,
     about: "Least attenuation in the stopband; default 60 dB.",
   }).optional(),
-  method: oneOf(["auto", "windowed-sinc"], { default: "auto", about: "How the taps are designed." }),
+  method: oneOf(["auto", "windowed-sinc", "equiripple", "least-squares", "savitzky-golay"], {
+    default: "auto",
+    about:
+      "How the taps are designed; auto takes the shortest that keeps a specification, or windowed-sinc for a given size.",
+  }),
   taps: count({ min: 1, max: 20_001, about: "Number of taps; with edge and window." }).optional(),
   edge: list(frequency({ about: "An edge where the gain is -6 dB." }), {
     min: 1,
@@ -49,6 +62,28 @@ const settings = stageSettings("fir", {
     about: "Window of a filter of given size; default hamming. Triangular has zero end points.",
   }).optional(),
   beta: finite({ min: 0, max: 100, about: "Shape of the Kaiser window." }).optional(),
+  bands: list(
+    strictObject(
+      {
+        from: frequency({ zero: true, about: "Lower limit." }),
+        to: frequency({ zero: true, about: "Upper limit." }),
+        gain: list(finite({ min: -100, max: 100, about: "A gain." }), {
+          min: 1,
+          max: 2,
+          single: true,
+          about: "Gain wanted, or its values at both limits with a straight line between.",
+        }),
+        weight: finite({ min: 1e-6, max: 1e6, default: 1, about: "Weight of the error in this band." }),
+      },
+      "A band and the gain wanted in it; what lies between bands is free.",
+    ),
+    { min: 1, max: 12, about: "Bands of an equiripple or least-squares filter of given taps." },
+  ).optional(),
+  degree: count({
+    min: 0,
+    max: 20,
+    about: "Degree of the local polynomial of a savitzky-golay filter.",
+  }).optional(),
   coefficients: list(finite({ about: "A tap." }), {
     min: 1,
     max: 20_001,

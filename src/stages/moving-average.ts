@@ -4,8 +4,10 @@
  * (closed form of the geometric sum; any text on signal processing).
  */
 import type { z } from "zod";
-import { count, duration, finite, list, oneOf, percent, stageSettings } from "../pipeline/kinds.ts";
+import { count, duration, oneOf, percent, stageSettings } from "../pipeline/kinds.ts";
+import { listedOrNamed } from "../pipeline/listed-or-named.ts";
 import { halfStepLater, intervalSeconds } from "../signal/grid.ts";
+import { weightedAverage } from "../signal/weighted-averages.ts";
 import { WindowKernel } from "../signal/window-kernel.ts";
 import { unevenSelection, windowPoints } from "./parts/lengths.ts";
 import type { DesignOutcome, Problem, Signal, Stage } from "./stage.ts";
@@ -15,10 +17,12 @@ const LONGEST = 1_000_000;
 const settings = stageSettings("moving-average", {
   points: count({ min: 1, max: LONGEST, about: "Number of samples in the window." }).optional(),
   over: duration({ about: "Length of the window: a whole number of sample intervals." }).optional(),
-  weights: list(finite({ about: "A weight." }), {
-    min: 1,
+  weights: listedOrNamed({
     max: 20_001,
-    about: "Weights in order of time, rescaled to a sum of 1; equal when left out.",
+    names: "spencer-15|spencer-21|henderson-[1-9]\\d*|[1-9]\\d*x[1-9]\\d*",
+    such: ["spencer-15", "henderson-13", "2x12"],
+    about:
+      "Weights in order of time, rescaled to a sum of 1, or a published set by name; equal when left out.",
   }).optional(),
   reach: oneOf(["both-sides", "past-only"], {
     default: "both-sides",
@@ -54,12 +58,24 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       allowed: "one of points, over, weights",
       todo: "keep one of them",
     });
+  const named = typeof s.weights === "string" ? weightedAverage(s.weights) : null;
+  if (typeof s.weights === "string" && named === null)
+    problems.push({
+      code: "unknown-weights",
+      severity: "error",
+      path: ["weights"],
+      problem: "there is no published average of this name",
+      given: s.weights,
+      allowed: "spencer-15, spencer-21, henderson-N (N odd, 5 to 1001), AxB (a mean of A means of B)",
+      todo: "write one of them, or list the weights",
+    });
+  const weights = named ?? (typeof s.weights === "string" ? undefined : s.weights);
   const n =
-    s.weights?.length ??
+    weights?.length ??
     s.points ??
     (s.over === undefined ? undefined : windowPoints(s.over, grid, ["over"], LONGEST, problems));
-  const sum = s.weights?.reduce((a, w) => a + w, 0) ?? 1;
-  if (s.weights !== undefined && Math.abs(sum) < 1e-9 * s.weights.reduce((a, w) => a + Math.abs(w), 0))
+  const sum = weights === undefined ? 1 : sumOf(weights);
+  if (weights !== undefined && Math.abs(sum) < 1e-9 * sumOf(Array.from(weights, Math.abs)))
     problems.push({
       code: "weights-cancel",
       severity: "error",
@@ -75,11 +91,9 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
   if (centred && even) unevenSelection(signal, selected, n, problems);
   if (problems.some((p) => p.severity === "error")) return { design: null, problems };
 
-  const equal = s.weights === undefined;
+  const equal = weights === undefined;
   // Weights are given in order of time; taps are in order of convolution.
-  const taps = equal
-    ? new Float64Array(n).fill(1 / n)
-    : Float64Array.from(s.weights!, (w) => w / sum).reverse();
+  const taps = equal ? new Float64Array(n).fill(1 / n) : Float64Array.from(weights, (w) => w / sum).reverse();
   const after = centred ? Math.floor(n / 2) : 0;
   const symmetric = taps.every((w, i) => w === taps[n - 1 - i]);
   const delay = symmetric ? (n - 1) / 2 : centroid(taps);
@@ -94,6 +108,7 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       settings: {
         points: n,
         over_s: n * interval,
+        ...(typeof s.weights === "string" ? { "weights-named": s.weights } : {}),
         ...(equal ? {} : { weights: Array.from(taps).reverse() }),
         reach: s.reach,
         coverage_pct: s.coverage * 100,
@@ -119,6 +134,8 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
     },
   };
 }
+
+const sumOf = (list: ArrayLike<number>): number => Array.from(list).reduce((a, w) => a + w, 0);
 
 /** Delay of weights without symmetry at low frequency: their centre of gravity, in samples. */
 function centroid(taps: Float64Array): number {

@@ -1,11 +1,12 @@
-import type { Frequency } from "../../pipeline/quantities.ts";
+/** The taps of a fir stage, in whichever way its settings describe them. */
 import { DesignError } from "../../signal/design-error.ts";
 import { groupDelayOf } from "../../signal/response.ts";
 import { designBySpecification } from "../../signal/specification.ts";
 import { designWindowedSinc, type FilterShape } from "../../signal/windowed-sinc.ts";
 import type { FirSettings } from "../fir.ts";
 import type { Problem } from "../stage.ts";
-import { inCyclesPerSample } from "./frequencies.ts";
+import { byBands, savitzkyGolay, wrongMethod } from "./fir-bands.ts";
+import { edges, hertz, inOrder, missing } from "./fir-edges.ts";
 
 export interface ChosenTaps {
   /** In order of convolution. */
@@ -26,10 +27,10 @@ const PASSES: Record<FilterShape, string> = {
   "band-stop": "Took out what lies between",
 };
 
-/** Settings of each of the three ways to say what the filter is; those not named belong to all. */
+/** Settings that say in which way the filter is described. */
 const WAYS = {
   specification: ["pass", "stop", "ripple", "attenuation"],
-  size: ["taps", "edge", "window", "beta"],
+  size: ["taps", "edge", "window", "beta", "bands", "degree"],
   given: ["coefficients"],
 } as const;
 
@@ -49,13 +50,16 @@ export function chooseTaps(s: FirSettings, interval_s: number, problems: Problem
       problem:
         ways.length === 0 ? "the filter is not described" : "the filter is described in more than one way",
       given: used.length === 0 ? "none of pass and stop, taps, coefficients" : used.join(", "),
-      allowed: "pass and stop (with ripple, attenuation); or taps, edge and window; or coefficients",
+      allowed:
+        "pass and stop (with ripple, attenuation); or taps with edge, bands or degree; or coefficients",
       todo: "choose one of the three",
     });
     return null;
   }
   try {
     if (s.coefficients !== undefined) return given(s.coefficients);
+    if (ways[0] === "size" && s.method === "savitzky-golay") return savitzkyGolay(s, problems);
+    if (ways[0] === "size" && s.bands !== undefined) return byBands(s, s.bands, interval_s, problems);
     if (s.shape === undefined) {
       problems.push(missing("shape", "low-pass, high-pass, band-pass or band-stop"));
       return null;
@@ -103,15 +107,29 @@ function bySpecification(
   if (pass === null || stop === null || !inOrder(shape, pass, stop, interval_s, problems)) return null;
   const ripple_dB = s.ripple ?? DEFAULT_RIPPLE_dB;
   const attenuation_dB = s.attenuation ?? DEFAULT_ATTENUATION_dB;
+  if (s.method === "savitzky-golay") {
+    problems.push(wrongMethod(s, "auto, windowed-sinc, equiripple, least-squares", "take method out"));
+    return null;
+  }
   const made = designBySpecification({
     shape,
     pass,
     stop,
     ripple_dB,
     attenuation_dB,
-    method: "windowed-sinc",
+    method: s.method,
     parity: "odd",
   });
+  if (made.warning !== undefined)
+    problems.push({
+      code: "free-band-peak",
+      severity: "warning",
+      path: ["method"],
+      problem: made.warning,
+      given: s.method,
+      allowed: "any; what lies there is amplified",
+      todo: "set method: auto or windowed-sinc, or make the transitions equally wide",
+    });
   const hz = (f: number) => f / interval_s;
   return {
     taps: made.taps,
@@ -141,6 +159,14 @@ function bySize(
   interval_s: number,
   problems: Problem[],
 ): ChosenTaps | null {
+  if (s.method !== "auto" && s.method !== "windowed-sinc")
+    problems.push(
+      wrongMethod(
+        s,
+        "auto, windowed-sinc",
+        s.method === "savitzky-golay" ? "add degree" : "give bands, or pass and stop",
+      ),
+    );
   if (s.taps === undefined) problems.push(missing("taps", "a count"));
   const edge = edges(s.edge, "edge", shape, interval_s, problems);
   const window = s.window ?? "hamming";
@@ -176,110 +202,3 @@ function bySize(
     delay: (s.taps - 1) / 2,
   };
 }
-
-/** The one or two edges that a shape needs, inside (0, 0.5) cycles/sample and rising. */
-function edges(
-  list: readonly Frequency[] | undefined,
-  key: "pass" | "stop" | "edge",
-  shape: FilterShape,
-  interval_s: number,
-  problems: Problem[],
-): number[] | null {
-  const wanted = shape === "low-pass" || shape === "high-pass" ? 1 : 2;
-  if (list === undefined) {
-    problems.push(missing(key, wanted === 1 ? "a frequency" : "two frequencies"));
-    return null;
-  }
-  if (list.length !== wanted) {
-    problems.push({
-      code: "edge-count",
-      severity: "error",
-      path: [key],
-      problem: `a ${shape} filter has ${wanted === 1 ? "one edge" : "two edges"} here`,
-      given: `${list.length}`,
-      allowed: `${wanted}`,
-      todo: wanted === 1 ? "give one frequency" : "give a list of two, lower one first",
-    });
-    return null;
-  }
-  const nyquist = 0.5 / interval_s;
-  let ok = true;
-  const values = list.map((f, i) => {
-    const value = inCyclesPerSample(f, interval_s);
-    if (!(value > 0 && value < 0.5)) {
-      ok = false;
-      problems.push({
-        code: "edge-above-nyquist",
-        severity: "error",
-        path: list.length > 1 ? [key, i] : [key],
-        problem: value > 0 ? "the edge is not below the Nyquist frequency" : "the edge must be above zero",
-        given: `${f.text} = ${hertz(value / interval_s)}, with a sample interval of ${interval_s} s`,
-        allowed: `above 0 and below ${hertz(nyquist)}`,
-        todo: "lower the edge, or filter before the rate is lowered",
-      });
-    }
-    return value;
-  });
-  if (ok && values.length === 2 && !(values[0]! < values[1]!)) {
-    ok = false;
-    problems.push({
-      code: "edge-order",
-      severity: "error",
-      path: [key],
-      problem: "the two edges must rise",
-      given: list.map((f) => f.text).join(", "),
-      allowed: "lower edge first",
-      todo: "swap them",
-    });
-  }
-  return ok ? values : null;
-}
-
-/** Passband and stopband must not overlap. */
-function inOrder(
-  shape: FilterShape,
-  pass: readonly number[],
-  stop: readonly number[],
-  interval_s: number,
-  problems: Problem[],
-): boolean {
-  const [p0, p1] = pass as [number, number];
-  const [s0, s1] = stop as [number, number];
-  const fine = {
-    "low-pass": p0 < s0,
-    "high-pass": s0 < p0,
-    "band-pass": s0 < p0 && p1 < s1,
-    "band-stop": p0 < s0 && s1 < p1,
-  }[shape];
-  if (fine) return true;
-  const text = (list: readonly number[]) => list.map((f) => hertz(f / interval_s)).join(", ");
-  problems.push({
-    code: "bands-overlap",
-    severity: "error",
-    path: ["stop"],
-    problem: `passband and stopband of a ${shape} filter overlap`,
-    given: `pass ${text(pass)}; stop ${text(stop)}`,
-    allowed: {
-      "low-pass": "pass below stop",
-      "high-pass": "stop below pass",
-      "band-pass": "stop, pass, pass, stop in rising order",
-      "band-stop": "pass, stop, stop, pass in rising order",
-    }[shape],
-    todo: "swap the edges, or change the shape",
-  });
-  return false;
-}
-
-function missing(key: string, what: string): Problem {
-  return {
-    code: "missing-setting",
-    severity: "error",
-    path: [],
-    problem: `${key} is missing`,
-    given: `no ${key}`,
-    allowed: what,
-    todo: `add ${key}`,
-  };
-}
-
-const hertz = (f: number): string => `${Number(f.toPrecision(4))} Hz`;
