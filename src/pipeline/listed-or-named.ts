@@ -28,7 +28,7 @@ export function listedOrNamed(o: ListedOrNamedTold): Kind<readonly number[] | st
     if (Array.isArray(value) && value.length > 0 && value.length <= o.max && value.every(Number.isFinite))
       return { is: value as number[] };
     return new Misfit("this is neither a list of numbers nor a known name", {
-      code: "not-listed-or-named",
+      code: "not-a-choice",
       given: shown(value),
       allowed: facts.allowed,
       todo: `write for instance ${o.such[0]}, or [1, 2, 1]`,
