@@ -11,6 +11,7 @@ import {
   type PartIssues,
   wrongType,
 } from "./kind.ts";
+import { isMapping } from "./plain-data.ts";
 import { name, nameMisfit } from "./texts.ts";
 
 /** JSON Schema of what may stand in the file; every kind brings its own. */
@@ -178,8 +179,4 @@ export function stageSettings<const S extends z.core.$ZodLooseShape>(stage: stri
       }).optional(),
     })
     .meta({ title: stage });
-}
-
-export function isMapping(value: unknown): value is Record<string, unknown> {
-  return value !== null && typeof value === "object" && !Array.isArray(value);
 }

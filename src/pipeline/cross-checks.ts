@@ -1,9 +1,8 @@
 /** What the schema cannot judge: whether the parts of a pipeline file fit each other. */
 import { nearestName, quoted } from "../diagnostics.ts";
-import { isMapping } from "./collections.ts";
 import type { Mistake, Path } from "./explain.ts";
+import { isMapping, valueAt } from "./plain-data.ts";
 import { parseFrequency } from "./quantities.ts";
-import { valueAt } from "./schema.ts";
 
 /** Names that the columns of the outputs have already. */
 const TIME_COLUMN = "time";

@@ -1,10 +1,9 @@
 /** Turns what a schema found wrong into words with a place: which key or value, what is allowed, what to do. */
 import { z } from "zod";
 import { nearestName, quoted } from "../diagnostics.ts";
-import { isMapping } from "./collections.ts";
 import { exampleOf, keysOf, stageNames, wordsOf } from "./describe-schema.ts";
 import { factsOf, type IssueFacts, shown } from "./kind.ts";
-import { valueAt } from "./schema.ts";
+import { isMapping, valueAt } from "./plain-data.ts";
 
 export type Path = readonly (string | number)[];
 

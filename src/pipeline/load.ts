@@ -3,12 +3,12 @@ import { createHash } from "node:crypto";
 import { closeSync, openSync, readSync } from "node:fs";
 import { dirname, resolve } from "node:path";
 import { type Diagnostic, DiagnosticError } from "../diagnostics.ts";
-import { isMapping } from "./collections.ts";
 import { crossChecks } from "./cross-checks.ts";
 import { keysOf } from "./describe-schema.ts";
 import { type PipelineDocument, type Place, readDocument } from "./document.ts";
 import { explain, type Mistake, type Path } from "./explain.ts";
 import { shown } from "./kind.ts";
+import { isMapping } from "./plain-data.ts";
 import { asPipeline, type Pipeline, pipelineSchema, type StageSchemas } from "./schema.ts";
 
 export type { Place } from "./document.ts";

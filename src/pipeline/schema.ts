@@ -1,6 +1,6 @@
 /** The pipeline file, section by section, with every stage's own settings. */
 import { z } from "zod";
-import { isMapping, jsonSchemaOf } from "./collections.ts";
+import { jsonSchemaOf } from "./collections.ts";
 import type { JsonSchema, Kind } from "./kind.ts";
 import {
   count,
@@ -37,11 +37,14 @@ const SEPARATORS = new Map([
   [" ", " "],
 ]);
 
+/** Names of the encoding standard (WHATWG), which the log reader decodes by. */
+export const ENCODINGS = ["utf-8", "utf-16le", "utf-16be", "iso-8859-1", "windows-1252"] as const;
+
 const layout = strictObject(
   {
     separator: sign(SEPARATORS, { about: "Sign between two cells." }).optional(),
     "decimal-sign": oneOf([".", ","], { about: "Sign between whole part and fraction." }).optional(),
-    encoding: oneOf(["utf-8", "utf-16", "latin-1"], { about: "How characters are stored." }).optional(),
+    encoding: oneOf(ENCODINGS, { about: "How characters are stored." }).optional(),
     "names-line": count({ min: 1, max: 1_000_000, about: "Line that holds the column names." }).optional(),
     "data-from-line": count({ min: 1, max: 1_000_000, about: "Line of the first data row." }).optional(),
   },
@@ -254,15 +257,4 @@ export function asPipeline(file: File, names: readonly string[]): Pipeline {
 export function pipelineJsonSchema(stages: StageSchemas): JsonSchema {
   const { $schema, ...rest } = jsonSchemaOf(pipelineSchema(stages));
   return { $schema, title: "forebay pipeline", ...rest };
-}
-
-/** The value at a path of the file as it was read; undefined where there is none. */
-export function valueAt(data: unknown, path: readonly PropertyKey[]): unknown {
-  let value = data;
-  for (const step of path) {
-    if (Array.isArray(value)) value = value[Number(step)];
-    else if (isMapping(value) && Object.hasOwn(value, step)) value = value[step as string];
-    else return undefined;
-  }
-  return value;
 }

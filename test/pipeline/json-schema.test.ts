@@ -5,7 +5,8 @@ import { parse } from "yaml";
 import { schemaText } from "../../src/cli/schema.ts";
 import { STAGES } from "../../src/stages/registry.ts";
 import { FAKE_STAGES } from "./fake-stages.ts";
-import { GOOD, MISTAKES, withMistake } from "./mistakes.ts";
+import { GOOD, withMistake } from "./good-file.ts";
+import { MISTAKES } from "./mistakes.ts";
 
 // What an editor does: parse the YAML, then judge the data by the schema. Strict: no unknown keyword passes.
 const validator = (text: string) =>

@@ -5,7 +5,8 @@ import { afterAll, describe, expect, test } from "vitest";
 import { type Diagnostic, DiagnosticError } from "../../src/diagnostics.ts";
 import { loadPipeline, readPipeline } from "../../src/pipeline/load.ts";
 import { FAKE_STAGES } from "./fake-stages.ts";
-import { GOOD, MISTAKES, withMistake } from "./mistakes.ts";
+import { GOOD, withMistake } from "./good-file.ts";
+import { MISTAKES } from "./mistakes.ts";
 
 const SOURCES = new URL("../../src/pipeline/", import.meta.url);
 
