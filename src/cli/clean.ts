@@ -10,6 +10,7 @@ import { planPipeline } from "../pipeline/plan.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import { parseInstant } from "../pipeline/quantities.ts";
 import { STAGES } from "../stages/registry.ts";
+import { checkClock } from "./check-clock.ts";
 import { cleanSeries } from "./clean-series.ts";
 import { DONE, NOT_MET, PART_DONE, WRONG } from "./exit-codes.ts";
 import { openJournal } from "./journal.ts";
@@ -45,6 +46,7 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
     plan = planned.plan;
     complain(planned.warnings);
     checkRemoved(loaded, plan);
+    checkClock(loaded);
     scope = scopeOf(options);
   } catch (error) {
     if (!(error instanceof DiagnosticError)) throw error;

@@ -7,6 +7,7 @@ import { accountText, designAccount } from "../report/account.ts";
 import type { StageAccount } from "../report/account-format.ts";
 import { type Advice, adviseOnMeans, type Candidate } from "../report/adviser.ts";
 import { STAGES } from "../stages/registry.ts";
+import { checkClock } from "./check-clock.ts";
 import { checkRemoved, type Streams } from "./clean.ts";
 import { DONE, NOT_MET, WRONG } from "./exit-codes.ts";
 import { responsePicture } from "./response-picture.ts";
@@ -23,6 +24,7 @@ export function rehearse(path: string, options: RehearseOptions, streams: Stream
     const loaded = loadPipeline(path, shownPath(path), STAGES);
     const { plan, warnings } = planPipeline(loaded, STAGES);
     checkRemoved(loaded, plan);
+    checkClock(loaded);
     for (const d of warnings) streams.err(`${renderDiagnostic(d)}\n`);
     if (options.interval !== undefined) {
       const problems = plan.gridStage.design.checkInterval(intervalOf(options.interval));

@@ -6,7 +6,9 @@ import {
   count,
   decibels,
   duration,
+  finite,
   frequency,
+  instant,
   list,
   name,
   oneOf,
@@ -37,6 +39,13 @@ const SEPARATORS = new Map([
   [" ", " "],
 ]);
 
+const THOUSANDS = new Map([
+  [",", ","],
+  [".", "."],
+  ["'", "'"],
+  ["blank", " "],
+]);
+
 /** Names of the encoding standard (WHATWG), which the log reader decodes by. */
 export const ENCODINGS = ["utf-8", "utf-16le", "utf-16be", "iso-8859-1", "windows-1252"] as const;
 
@@ -45,6 +54,7 @@ const layout = strictObject(
     separator: sign(SEPARATORS, { about: "Sign between two cells." }).optional(),
     "decimal-sign": oneOf([".", ","], { about: "Sign between whole part and fraction." }).optional(),
     encoding: oneOf(ENCODINGS, { about: "How characters are stored." }).optional(),
+    "thousands-sign": sign(THOUSANDS, { about: "Sign between groups of three digits." }).optional(),
     "names-line": count({ min: 1, max: 1_000_000, about: "Line that holds the column names." }).optional(),
     "data-from-line": count({ min: 1, max: 1_000_000, about: "Line of the first data row." }).optional(),
   },
@@ -53,12 +63,39 @@ const layout = strictObject(
 
 const time = strictObject(
   {
-    column: text({ about: "Name of the column that holds the times.", example: "logged_at", line: true }),
-    form: oneOf(["iso-8601", "unix-s", "unix-ms", "unix-us", "unix-ns"], {
-      default: "iso-8601",
-      about: "How the times are written.",
+    column: list(text({ about: "A column's name.", example: "logged_at", line: true }), {
+      min: 1,
+      max: 4,
+      single: true,
+      about: "Column that holds the times, or several whose cells are put together: [Date, Time].",
     }),
-    zone: oneOf(["UTC"], { about: "Time zone; needed when the times carry no offset." }).optional(),
+    form: text({
+      about:
+        "How times are written: iso-8601, unix-s, unix-ms, unix-us, unix-ns, elapsed-s, elapsed-ms, elapsed-us, elapsed-ns, serial-day-1900, serial-day-1904, or a Unicode date pattern; found from the cells when left out, asked for where that is not certain.",
+      example: "dd/MM/yyyy HH:mm:ss",
+      line: true,
+    }).optional(),
+    zone: text({
+      about: "Time zone of cells without an offset: an IANA name, UTC, or an offset such as +01:00.",
+      example: "Europe/Berlin",
+      line: true,
+    }).optional(),
+    pivot: count({
+      min: 1800,
+      max: 2200,
+      about: "First of the hundred years that two-digit years stand for; 1970 when left out.",
+    }).optional(),
+    date: text({
+      about: "Date of the first row, for cells that hold the time of day only.",
+      example: '"2031-03-04"',
+      line: true,
+    }).optional(),
+    start: instant({ about: "Time at which an elapsed count is zero." }).optional(),
+    rollover: finite({
+      min: 1,
+      max: 1e18,
+      about: "The count starts again from zero at this value.",
+    }).optional(),
   },
   "The times of the rows.",
 );

@@ -219,7 +219,6 @@ const VALUES: MistakeCase[] = [
   { code: "wrong-type", replace: "level: { column: LEVEL_M, unit: m }", by: "level: §LEVEL_M" },
   { code: "wrong-type", replace: "bands:\n      tide: { from: 0 Hz, to: 0.1 mHz }", by: "bands: §[tide]" },
   { code: "not-a-choice", replace: "shape: low-pass", by: "shape: §lowpass", says: "write low-pass" },
-  { code: "not-a-choice", replace: "form: iso-8601", by: "form: §stopwatch", says: "iso-8601, unix-s" },
   { code: "not-a-choice", replace: 'separator: ";"', by: 'separator: §"/"' },
   { code: "list-length", replace: "weights: [1, 2.5, 1]", by: "weights: §[]", says: "too few" },
   {
