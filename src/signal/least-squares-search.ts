@@ -40,7 +40,7 @@ function bestOfLength(mask: Mask, n: number): MaskFilter | null {
       n,
       parts,
       bands.map((b) => (b.gain === 0 ? 10 ** decades : 1)),
-    );
+    ).taps;
   const verified = (taps: Float64Array): MaskFilter | null => {
     const achieved = achievedBy(taps, mask);
     if (!keeps(achieved, mask)) return null;

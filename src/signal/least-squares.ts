@@ -4,9 +4,10 @@
  * T. W. Parks & C. S. Burrus (1987), Digital Filter Design, section 3.2 (normal equations of a Toeplitz and a Hankel
  * part). Recalled from memory.
  */
-import { factorize, solve } from "./cholesky.ts";
+import { conditionOf, type Factors, factorize, solve } from "./cholesky.ts";
 import { type DesignBand, largestDontCareGain, refuseImpossibleBands, wantedGain } from "./design-bands.ts";
-import { DesignError } from "./design-error.ts";
+import { gaussLegendre } from "./gauss-legendre.ts";
+import { leastSquares } from "./householder.ts";
 import { amplitudeAt } from "./linear-phase.ts";
 
 /** Above this the normal equations take seconds. */
@@ -30,12 +31,48 @@ export function designLeastSquares(taps: number, bands: readonly DesignBand[]): 
   refuseImpossibleBands(taps, MOST_LEAST_SQUARES_TAPS, bands);
   const parts = bands.map((band) => bandIntegrals(taps, band));
   const weights = bands.map((b) => b.weight);
-  const h = solveNormalEquations(taps, parts, weights);
+  const solved = solveNormalEquations(taps, parts, weights);
+  const h =
+    conditionOf(solved.factors) < WELL_CONDITIONED
+      ? solved.taps
+      : (byReflections(taps, bands) ?? solved.taps);
   return {
     taps: h,
     squaredError: squaredError(h, bands),
     largestDontCareGain: largestDontCareGain(h, bands).gain,
   };
+}
+
+/** Condition of the normal equations up to which their solution keeps ten digits. */
+const WELL_CONDITIONED = 1e5;
+
+/**
+ * The same minimum where wide gaps between the bands make the normal equations all but singular: the integrals become
+ * sums over the points of a quadrature that is exact to rounding, and their square root is never squared.
+ */
+function byReflections(taps: number, bands: readonly DesignBand[]): Float64Array | null {
+  const m = Math.ceil(taps / 2);
+  const frequencies: number[] = [];
+  const roots: number[] = [];
+  const wanted: number[] = [];
+  for (const band of bands) {
+    const half = (band.to - band.from) / 2;
+    // The products turn 2 N (to - from) times at most: pi / 2 points a turn, and some, are enough.
+    const { points, weights } = gaussLegendre(Math.ceil(Math.PI * taps * half) + 30);
+    for (const [i, x] of points.entries()) {
+      const f = band.from + half * (1 + x);
+      const root = Math.sqrt(band.weight * half * weights[i]!);
+      frequencies.push(f);
+      roots.push(root);
+      wanted.push(root * wantedGain(band, f));
+    }
+  }
+  const columns = Array.from({ length: m }, (_, i) => {
+    const p = distance(taps, i);
+    return Float64Array.from(frequencies, (f, row) => roots[row]! * Math.cos(2 * Math.PI * ((f * p) % 1)));
+  });
+  const coefficients = leastSquares(columns, Float64Array.from(wanted));
+  return coefficients === null ? null : tapsFrom(taps, coefficients);
 }
 
 /** What a band of weight 1 contributes to the normal equations. */
@@ -88,7 +125,7 @@ export function solveNormalEquations(
   taps: number,
   parts: readonly BandIntegrals[],
   weights: readonly number[],
-): Float64Array {
+): { taps: Float64Array; factors: Factors } {
   const m = Math.ceil(taps / 2);
   const cosines = new Float64Array(taps + 1);
   const wanted = new Float64Array(m);
@@ -105,32 +142,24 @@ export function solveNormalEquations(
       matrix[i * m + j] = value;
       matrix[j * m + i] = value;
     }
-  const factor = factorize(matrix, m);
-  const coefficients = solve(factor, wanted);
-  if (!coefficients.every(Number.isFinite))
-    throw new DesignError({
-      problem: "the least-squares equations cannot be solved in double precision",
-      given: `${taps} taps`,
-      allowed: "fewer taps, or narrower gaps between the bands",
-      todo: "use fewer taps",
-    });
+  const factors = factorize(matrix, m);
+  return { taps: tapsFrom(taps, solve(factors, wanted)), factors };
+}
+
+/** Taps of the amplitude with these coefficients of cos(2 pi f p), p the distance from the centre. */
+function tapsFrom(taps: number, coefficients: Float64Array): Float64Array {
   const h = new Float64Array(taps);
-  for (let i = 0; i < m; i++) {
-    const value = odd && i === 0 ? coefficients[0]! : coefficients[i]! / 2;
+  for (const [i, c] of coefficients.entries()) {
     const right = Math.floor(taps / 2) + i;
-    h[right] = value;
-    h[taps - 1 - right] = value;
+    h[right] = taps % 2 === 1 && i === 0 ? c : c / 2;
+    h[taps - 1 - right] = h[right]!;
   }
   return h;
 }
 
-/** Abscissae and weights of Gauss-Legendre quadrature with four points on -1 … 1 (Abramowitz & Stegun, table 25.4). */
-const GAUSS = [
-  [0.8611363115940526, 0.3478548451374538],
-  [0.3399810435848563, 0.6521451548625461],
-] as const;
-/** Panels to a lobe of the response. */
+/** Panels to a turn of the response, each of four points. */
 const PANELS = 8;
+const PANEL = gaussLegendre(4);
 
 /** Weighted integral of the squared error over the bands, cycles/sample. */
 export function squaredError(taps: Float64Array, bands: readonly DesignBand[]): number {
@@ -140,11 +169,10 @@ export function squaredError(taps: Float64Array, bands: readonly DesignBand[]): 
     const half = (band.to - band.from) / (2 * panels);
     let sum = 0;
     for (let i = 0; i < panels; i++)
-      for (const [x, w] of GAUSS)
-        for (const sign of [-1, 1]) {
-          const f = band.from + half * (2 * i + 1 + sign * x);
-          sum += w * (amplitudeAt(taps, f) - wantedGain(band, f)) ** 2;
-        }
+      for (const [k, x] of PANEL.points.entries()) {
+        const f = band.from + half * (2 * i + 1 + x);
+        sum += PANEL.weights[k]! * (amplitudeAt(taps, f) - wantedGain(band, f)) ** 2;
+      }
     whole += band.weight * half * sum;
   }
   return whole;

@@ -1,6 +1,12 @@
+import { expect } from "vitest";
 import type { FilterShape } from "../../src/signal/linear-phase.ts";
 import { bandsOf, type Mask } from "../../src/signal/mask.ts";
-import { gainAt } from "../../src/signal/response.ts";
+import { gainAt, symmetryOf } from "../../src/signal/response.ts";
+import {
+  designBySpecification,
+  type Specification,
+  type SpecifiedFilter,
+} from "../../src/signal/specification.ts";
 
 export const shapes: readonly FilterShape[] = ["low-pass", "high-pass", "band-pass", "band-stop"];
 
@@ -44,4 +50,25 @@ export function onDenseGrid(taps: Float64Array, mask: Mask): { ripple_dB: number
     ripple_dB: Math.max(...pass.flatMap(gains).map((g) => Math.abs(dB(g)))),
     attenuation_dB: -dB(Math.max(...stop.flatMap(gains))),
   };
+}
+
+/** The filter of a method, seen on a plain grid of 16 points a tap to keep its mask as it says. */
+export function kept(
+  mask: Mask,
+  method: Specification["method"],
+  parity: "odd" | "any" = "any",
+): SpecifiedFilter {
+  const made = designBySpecification({ ...mask, method, parity });
+  expect(symmetryOf(made.taps)).toBe("even");
+  const seen = onDenseGrid(made.taps, mask);
+  expect(seen.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
+  expect(seen.attenuation_dB).toBeGreaterThanOrEqual(mask.attenuation_dB);
+  // What is said to be achieved is what is seen, up to what lies between the points of the grid.
+  expect(made.achieved.ripple_dB).toBeGreaterThanOrEqual(seen.ripple_dB - 1e-9);
+  expect(made.achieved.ripple_dB).toBeLessThanOrEqual(mask.ripple_dB);
+  expect(made.achieved.attenuation_dB).toBeLessThanOrEqual(seen.attenuation_dB + 1e-9);
+  expect(made.achieved.attenuation_dB).toBeGreaterThanOrEqual(mask.attenuation_dB);
+  expect(made.largestGain).toBeGreaterThanOrEqual(gainAt(made.taps, mask.pass[0]!) - 1e-12);
+  expect(made.why).toMatch(/^[^\n]+[^.]$/);
+  return made;
 }
