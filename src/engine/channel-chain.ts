@@ -24,6 +24,15 @@ export interface StageMeasure {
   readonly counts: StateCounts;
 }
 
+/** What was measured of all stages together, at the first rate of the chain. */
+export interface WholeMeasure {
+  readonly comparison: Comparison;
+  readonly cross: CrossSpectra | null;
+  readonly spectra: NodeSpectra | null;
+  /** Number of stages after the grid stage that it takes in. */
+  readonly stages: number;
+}
+
 export interface ChainOptions {
   readonly plan: Plan;
   readonly channel: number;
@@ -45,6 +54,8 @@ export interface ChainOptions {
 /** One channel's way through the chain: kernels joined by sinks, with measurements at every node. */
 export class ChannelChain {
   readonly measures: StageMeasure[] = [];
+  /** From the resampled input to where samples are first dropped; null where not all of it is accounted for. */
+  readonly whole: WholeMeasure | null;
   readonly gridCounts: StateCounts;
   private readonly rows;
   private readonly entry: { push: Emit; flush: () => void };
@@ -68,6 +79,14 @@ export class ChannelChain {
       suspect: boolean;
     }[] = [];
     let node = new Node(grid, 0, options);
+    const start = node;
+    const all = stages.slice(0, tapAt + 1).filter((s) => s.selected.includes(channel));
+    const wanted =
+      options.spectra !== undefined &&
+      all.length > 0 &&
+      all.every((s) => s.accounted || s.stage === "report");
+    const startSpectra = wanted ? start.spectra() : null;
+    let whole: WholeMeasure | null = null;
     for (const [i, planned] of stages.entries()) {
       const active = planned.selected.includes(channel);
       const { design } = planned;
@@ -88,11 +107,11 @@ export class ChannelChain {
       let spectra: NodeSpectra | null = null;
       // What the output lags behind its input, in input samples, after moved stamps are counted.
       const lag = active ? lagSamples(planned) : 0;
-      const whole = Math.floor(lag + 1e-9);
-      const fraction = Math.abs(lag - whole) < 1e-9 ? 0 : lag - whole;
-      const full = new Node(dropping ? node.grid : design.grid, node.shift + whole, options);
+      const steps = Math.floor(lag + 1e-9);
+      const fraction = Math.abs(lag - steps) < 1e-9 ? 0 : lag - steps;
+      const full = new Node(dropping ? node.grid : design.grid, node.shift + steps, options);
       if (measured) {
-        comparison = new Comparison(fraction === 0 ? whole : null, range);
+        comparison = new Comparison(fraction === 0 ? steps : null, range);
         link.before.push((b) => comparison?.pushBefore(b));
         link.after.push((b) => comparison?.pushAfter(b));
         const before = node.spectra();
@@ -106,6 +125,25 @@ export class ChannelChain {
         options.spectra !== undefined && design.alias !== null && active
           ? new AliasSpectrum(options.spectra.forAlias(node.grid, design.keepEvery), planned, range)
           : null;
+      if (wanted && i === 0) link.before.push((b) => whole?.comparison.pushBefore(b));
+      if (wanted && i === tapAt) {
+        const total = all.reduce((sum, s) => sum + lagSamples(s), 0);
+        const rounded = Math.round(total);
+        const made = new Comparison(
+          Math.abs(total - rounded) < 1e-9 ? rounded : null,
+          indexRange(grid, scope),
+        );
+        link.after.push((b) => made.pushAfter(b));
+        const endSpectra = full.spectra();
+        const crossed = startSpectra !== null && endSpectra !== null;
+        whole = {
+          comparison: made,
+          // The nodes' shifts are whole; what is left of the delay is turned on the spectra.
+          cross: crossed ? new CrossSpectra(startSpectra, endSpectra, total - full.shift) : null,
+          spectra: crossed ? startSpectra : null,
+          stages: tapAt + 1,
+        };
+      }
       if (alias !== null) link.before.push((b) => alias.push(b));
       if (options.onBeforeDrop !== undefined && i === tapAt) link.after.push(options.onBeforeDrop);
       node.attach(link.before);
@@ -116,6 +154,7 @@ export class ChannelChain {
         node = new Node(coarserGrid(node.grid, design.keepEvery), 0, options);
       } else node = full;
     }
+    this.whole = whole;
     const ending: Emit[] = [];
     node.attach(ending);
 
@@ -133,17 +172,17 @@ export class ChannelChain {
         link.counts.push(block);
         next(block);
       };
-      const whole: Emit = (block) => {
+      const full: Emit = (block) => {
         if (block.values.length === 0) return;
         for (const each of link.after) each(block);
         link.drop.push(block, out);
       };
       push = (block) => {
         for (const each of link.before) each(block);
-        link.kernel.push(block, whole);
+        link.kernel.push(block, full);
       };
       flush = () => {
-        link.kernel.flush(whole);
+        link.kernel.flush(full);
         nextFlush();
       };
     }

@@ -17,6 +17,8 @@ export class Comparison {
   private readonly delay: number | null;
   private readonly range: IndexRange;
   private readonly waiting = new SampleBuffer();
+  /** Outputs that stand for inputs still to come: only taps that look ahead make them. */
+  private readonly early = new SampleBuffer();
 
   /** @param delay  whole samples; null when the delay is not whole, then only extremes are taken */
   constructor(delay: number | null, range: IndexRange) {
@@ -27,22 +29,41 @@ export class Comparison {
   pushBefore(block: GridBlock): void {
     if (this.delay !== null) this.waiting.append(block);
     this.before.addBlock(block, this.range);
+    if (this.early.length > 0) this.settleEarly();
   }
 
   pushAfter(block: GridBlock): void {
+    this.after.addBlock(block, this.range);
+    const { delay } = this;
+    if (delay === null) return;
+    if (delay >= 0) this.compare(block.values, block.first, block.values.length, delay);
+    else {
+      this.early.append(block);
+      this.settleEarly();
+    }
+  }
+
+  private settleEarly(): void {
+    const { early, waiting, delay } = this;
+    const count = Math.min(early.end, waiting.end + delay!) - early.base;
+    if (count <= 0) return;
+    this.compare(early.values, early.base, count, delay!);
+    early.dropBefore(early.base + count);
+  }
+
+  /** Outputs first … first + count - 1 against their inputs. */
+  private compare(values: Float64Array, first: number, count: number, delay: number): void {
     const { from, until } = this.range;
-    const { waiting, delay } = this;
-    for (let i = 0, k = block.first; i < block.values.length; i++, k++) {
-      const y = block.values[i]!;
+    const { waiting } = this;
+    for (let i = 0, k = first; i < count; i++, k++) {
+      const y = values[i]!;
       if (Number.isNaN(y) || k < from || k >= until) continue;
-      this.after.add(k, y);
-      if (delay === null) continue;
       const at = k - delay - waiting.base;
       const x = at >= 0 && at < waiting.length ? waiting.values[at]! : Number.NaN;
       if (Number.isNaN(x)) continue;
       this.sums.add(k, x, y);
       this.removal.add(k - delay, x - y);
     }
-    if (delay !== null) waiting.dropBefore(block.first + block.values.length - delay);
+    waiting.dropBefore(first + count - delay);
   }
 }

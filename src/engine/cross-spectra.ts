@@ -19,7 +19,8 @@ export class CrossSpectra {
   readonly xyIm: Float64Array;
   private readonly turnRe: Float64Array | null;
   private readonly turnIm: Float64Array | null;
-  private readonly waiting = new Map<number, SegmentSpectrum | null>();
+  private readonly waitingIn: Waiting = new Map();
+  private readonly waitingOut: Waiting = new Map();
 
   /**
    * @param fraction  the part of the stage's delay that is not a whole number of samples, 0 <= fraction < 1:
@@ -41,18 +42,19 @@ export class CrossSpectra {
       this.turnRe = Float64Array.from({ length: bins }, (_, k) => Math.cos(angle(k)));
       this.turnIm = Float64Array.from({ length: bins }, (_, k) => Math.sin(angle(k)));
     }
-    // At the node before, a segment is always served before its counterpart after the stage.
-    before.listen((m, spectrum) => this.waiting.set(m, spectrum));
-    after.listen((m, spectrum) => this.pair(m, spectrum));
-  }
-
-  private pair(m: number, y: SegmentSpectrum | null): void {
-    const x = this.waiting.get(m);
-    for (const key of this.waiting.keys()) {
-      if (key > m) break;
-      this.waiting.delete(key);
-    }
-    if (x !== undefined && x !== null && y !== null) this.add(x, y);
+    // A segment is served first on the side that has its last sample first: taps that look ahead have the output's.
+    before.listen((m, x) => {
+      const y = this.waitingOut.get(m);
+      dropUpTo(m, this.waitingOut);
+      if (y === undefined) this.waitingIn.set(m, x);
+      else if (x !== null && y !== null) this.add(x, y);
+    });
+    after.listen((m, y) => {
+      const x = this.waitingIn.get(m);
+      dropUpTo(m, this.waitingIn);
+      if (x === undefined) this.waitingOut.set(m, y);
+      else if (x !== null && y !== null) this.add(x, y);
+    });
   }
 
   private add(x: SegmentSpectrum, y: SegmentSpectrum): void {
@@ -78,5 +80,15 @@ export class CrossSpectra {
     }
     this.squareIn += x.meanSquare;
     this.segments++;
+  }
+}
+
+type Waiting = Map<number, SegmentSpectrum | null>;
+
+/** Both sides serve in rising order, so what is not after segment m has no counterpart to come. */
+function dropUpTo(m: number, waiting: Waiting): void {
+  for (const key of waiting.keys()) {
+    if (key > m) break;
+    waiting.delete(key);
   }
 }

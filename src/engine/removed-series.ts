@@ -1,4 +1,4 @@
-import type { Emit, GridBlock } from "../signal/grid-block.ts";
+import type { Emit } from "../signal/grid-block.ts";
 import { MISSING } from "../signal/marks.ts";
 import { SampleBuffer } from "../signal/sample-buffer.ts";
 
@@ -8,32 +8,42 @@ import { SampleBuffer } from "../signal/sample-buffer.ts";
  */
 export class RemovedSeries {
   private readonly input = new SampleBuffer();
+  private readonly output = new SampleBuffer();
   private readonly delay: number;
   private readonly sink: Emit;
 
-  /** @param delay  whole samples by which the output's index lags behind the input's */
+  /** @param delay  whole samples by which the output's index lags behind the input's; negative when it runs ahead */
   constructor(delay: number, sink: Emit) {
     this.delay = delay;
     this.sink = sink;
   }
 
-  readonly pushInput: Emit = (block) => this.input.append(block);
+  readonly pushInput: Emit = (block) => {
+    this.input.append(block);
+    if (this.output.length > 0) this.settle();
+  };
 
   readonly pushOutput: Emit = (block) => {
-    const { input, delay } = this;
-    const skip = Math.max(0, input.base - (block.first - delay));
-    const first = block.first - delay + skip;
-    const count = Math.min(block.values.length - skip, input.end - first);
+    this.output.append(block);
+    this.settle();
+  };
+
+  private settle(): void {
+    const { input, output, delay } = this;
+    if (!input.started) return;
+    output.dropBefore(input.base + delay);
+    const first = output.base - delay;
+    const count = Math.min(output.length, input.end - first);
     if (count <= 0) return;
     const values = new Float64Array(count);
     const marks = new Uint8Array(count);
     for (let i = 0; i < count; i++) {
       const x = input.values[first - input.base + i]!;
-      values[i] = x - block.values[skip + i]!;
-      marks[i] = block.marks[skip + i]! | (Number.isNaN(x) ? MISSING : 0);
+      values[i] = x - output.values[i]!;
+      marks[i] = output.marks[i]! | (Number.isNaN(x) ? MISSING : 0);
     }
-    const out: GridBlock = { first, values, marks };
     input.dropBefore(first + count);
-    this.sink(out);
-  };
+    output.dropBefore(output.base + count);
+    this.sink({ first, values, marks });
+  }
 }

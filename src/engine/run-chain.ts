@@ -6,7 +6,7 @@
 import type { RowBlock } from "../logs/rows.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import { firstIndexAtOrAfter, lastIndexAtOrBefore } from "../signal/grid.ts";
-import { ChannelChain, lagSamples, type StageMeasure } from "./channel-chain.ts";
+import { ChannelChain, lagSamples, type StageMeasure, type WholeMeasure } from "./channel-chain.ts";
 import { ChannelZip, type RowsOut } from "./channel-zip.ts";
 import type { StateCounts } from "./counts.ts";
 import { indexRange } from "./index-range.ts";
@@ -40,6 +40,7 @@ export interface RunOptions {
 /** What was measured of one channel. */
 export interface ChannelResult {
   readonly measures: readonly StageMeasure[];
+  readonly whole: WholeMeasure | null;
   readonly gridCounts: StateCounts;
   readonly interpolation: Record<string, unknown>;
   readonly inputStrip: TimeStrip;
@@ -143,6 +144,7 @@ export function runChain(options: RunOptions): ChannelResult[] {
     });
     results.push({
       measures: chain.measures,
+      whole: chain.whole,
       gridCounts: chain.gridCounts,
       get interpolation() {
         return chain.interpolationEffect();

@@ -254,6 +254,11 @@ export interface ChainChannelAccount {
   rms_in: number | null;
   rms_out: number | null;
   counts: Record<State, number>;
+  /**
+   * All stages together, on the grid of the resampled input, up to and with the filter of the first stage that
+   * drops samples; null without a report stage.
+   */
+  removal: ChannelAccount | null;
   /** For plotting: lowest and highest per column of time, on the resampled input, the clean series. */
   strip: {
     from: string;

@@ -192,7 +192,17 @@ const chain = z.object({
   rise_s: maybe,
   first: time.nullable(),
   last: time.nullable(),
-  channels: z.record(text, z.object({ unit: text, rms_in: maybe, rms_out: maybe, counts: states, strip })),
+  channels: z.record(
+    text,
+    z.object({
+      unit: text,
+      rms_in: maybe,
+      rms_out: maybe,
+      counts: states,
+      removal: channel.nullable(),
+      strip,
+    }),
+  ),
 });
 
 const schema = z.object({

@@ -22,7 +22,7 @@ import type {
   TimingAccount,
 } from "./account-format.ts";
 import { CAUTIONS } from "./cautions.ts";
-import { counted } from "./channel-account.ts";
+import { counted, wholeAccount } from "./channel-account.ts";
 import { chainDelay, judgeRequirements } from "./requirements.ts";
 import { gridStageAccount, lookAhead, stageAccount, stageDesignAccount } from "./stage-account.ts";
 import { verdictOf } from "./verdict.ts";
@@ -200,6 +200,7 @@ function chainAccount(parts: AccountParts): ChainAccount {
             rms_in: rms(accounted[0]?.comparison?.sums.figures()?.varianceIn),
             rms_out: rms(accounted.at(-1)?.comparison?.sums.figures()?.varianceOut),
             counts: counted(last).counts,
+            removal: wholeAccount(plan, c, result),
             strip: strip(result.inputStrip, plan.gridStage.design.grid, result.cleanStrip, plan.outGrid),
           },
         ];

@@ -3,26 +3,32 @@ import { lagSamples, type StageMeasure } from "../engine/channel-chain.ts";
 import type { Comparison } from "../engine/comparison.ts";
 import type { StateCounts } from "../engine/counts.ts";
 import type { CrossSpectra } from "../engine/cross-spectra.ts";
+import type { ChannelResult } from "../engine/run-chain.ts";
 import type { Extremes } from "../engine/sums.ts";
 import { isoTime } from "../outputs/cell-text.ts";
 import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
+import { convolveTaps } from "../signal/convolve.ts";
 import { type Grid, intervalSeconds, timeOf } from "../signal/grid.ts";
 import { bandPower } from "../signal/welch.ts";
 import type { ChannelAccount, Extreme } from "./account-format.ts";
 import { measuredDelay } from "./measured-delay.ts";
 import { bandAccounts, densities, spectrumAccount, toneAccounts } from "./spectrum-account.ts";
 
+/** What a measure must have to be accounted for. */
+type Measured = Pick<StageMeasure, "comparison" | "cross" | "spectra" | "counts">;
+
+/** @param outGrid  grid of the output before samples are dropped, where it is not the stage's own */
 export function channelAccount(
   plan: Plan,
   planned: PlannedStage,
-  measure: StageMeasure,
+  measure: Measured,
   unit: string,
+  outGrid: Grid = planned.design.keepEvery > 1 ? planned.signalIn.grid! : planned.design.grid,
 ): ChannelAccount {
   const base = { ...unmeasured(unit), ...counted(measure.counts) };
   const { comparison } = measure;
   if (comparison === null || plan.report === null) return base;
   const grid = planned.signalIn.grid!;
-  const outGrid: Grid = planned.design.keepEvery > 1 ? grid : planned.design.grid;
   const sums = comparison.sums.figures();
   const d =
     measure.cross === null || measure.spectra === null
@@ -174,4 +180,36 @@ function extreme(found: Extremes, grid: Grid, which: "high" | "low"): Extreme | 
   return which === "high"
     ? { value: found.high, time: isoTime(timeOf(grid, found.highAt)) }
     : { value: found.low, time: isoTime(timeOf(grid, found.lowAt)) };
+}
+
+/** All stages together, from the resampled input to where samples are first dropped; null where not measured. */
+export function wholeAccount(plan: Plan, channel: number, result: ChannelResult): ChannelAccount | null {
+  const { whole } = result;
+  if (whole === null) return null;
+  const stages = plan.stages.slice(0, whole.stages).filter((s) => s.selected.includes(channel));
+  const last = plan.stages[whole.stages - 1]!;
+  const sum = (figure: (s: PlannedStage) => number) => stages.reduce((total, s) => total + figure(s), 0);
+  // A trend has no response, so nothing is predicted where one was taken out.
+  const taps = stages.some((s) => s.design.learn !== undefined)
+    ? null
+    : stages.reduce<Float64Array>(
+        (all, s) => (s.design.taps === null ? all : convolveTaps(all, s.design.taps)),
+        Float64Array.of(1),
+      );
+  const together: PlannedStage = {
+    ...last,
+    signalIn: { ...last.signalIn, grid: plan.gridStage.design.grid },
+    design: {
+      ...last.design,
+      taps,
+      delay: {
+        samples: sum((s) => s.design.delay.samples),
+        indexSamples: sum((s) => s.design.delay.indexSamples),
+        compensated_s: sum((s) => s.design.delay.compensated_s),
+      },
+    },
+  };
+  const outGrid = last.design.keepEvery > 1 ? last.signalIn.grid! : last.design.grid;
+  const counts = result.measures[whole.stages - 1]!.counts;
+  return channelAccount(plan, together, { ...whole, counts }, plan.channels[channel]!.unit, outGrid);
 }

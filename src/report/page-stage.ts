@@ -91,8 +91,11 @@ function folds(s: StageAccount): string {
 }
 
 function channel(s: StageAccount, name: string, c: ChannelAccount): string {
-  if (!c.accounted || s.stage === "report") return "";
-  const id = anchor("s", s.place, name);
+  return c.accounted && s.stage !== "report" ? channelSection(anchor("s", s.place, name), name, c) : "";
+}
+
+/** What was taken out of one channel: figures, bands, tones, spectrum, and when. */
+export function channelSection(id: string, name: string, c: ChannelAccount): string {
   const rows: string[][] = [
     ["samples compared", count(c.samples)],
     ["mean", `${withUnit(c.mean_in, c.unit, 6)} → ${withUnit(c.mean_out, c.unit, 6)}`],
@@ -156,7 +159,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
       ? ""
       : htmlTable(
           `t-tones-${id}`,
-          `${name}: strongest tones before the stage`,
+          `${name}: strongest tones before`,
           ["frequency", "amplitude before", "gain", "afterwards at"],
           c.tones.map((t) => [
             withPeriod(t.frequency_Hz),
@@ -195,7 +198,7 @@ function channel(s: StageAccount, name: string, c: ChannelAccount): string {
             3,
           )} and ${number(p.interval_95.upper, 3)} times those shown.`,
         )}</p>`;
-  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what the stage took out`, ["figure", "value"], rows)}${bands}${tones}${spectrum}${removal}`;
+  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what was taken out`, ["figure", "value"], rows)}${bands}${tones}${spectrum}${removal}`;
 }
 
 function details(s: StageAccount): string {

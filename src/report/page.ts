@@ -2,7 +2,7 @@
 import { createHash } from "node:crypto";
 import type { Account, ChannelAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
-import { stageSection } from "./page-stage.ts";
+import { channelSection, stageSection } from "./page-stage.ts";
 import { STYLE } from "./page-style.ts";
 import { stripPlot } from "./plots/strip.ts";
 import { count, dB, duration, number, percent, timeForPeople, withPeriod, withUnit } from "./text.ts";
@@ -107,7 +107,17 @@ each band and tone stands in its own section below.</p>${htmlTable(
         tone === undefined ? "–" : dB(-tone.gain_dB),
       ];
     }),
-  )}`;
+  )}${wholeChain(account)}`;
+}
+
+/** All stages together, up to and with the filter of the first stage that drops samples. */
+function wholeChain({ chain }: Account): string {
+  const parts = Object.entries(chain.channels).flatMap(([name, c]) =>
+    c.removal === null ? [] : channelSection(anchor("whole", name), `${name}: the whole chain`, c.removal),
+  );
+  if (parts.length === 0) return "";
+  return `<p>All stages together, on the grid of the resampled input, up to and with the filter of the first stage
+that drops samples:</p>${parts.join("")}`;
 }
 
 function inputs(account: Account): string {

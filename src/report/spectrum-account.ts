@@ -129,6 +129,8 @@ export function toneAccounts(
     enbw_Hz: d.plan.enbw_Hz,
     degreesOfFreedom: d.degreesOfFreedom,
     falseAlarm: TONE_FALSE_ALARM,
+    windowCoefficients: d.plan.windowCoefficients,
+    hop: d.plan.hop,
   });
   const gains = taps === null ? d.gain : gainAtBins(taps, d.plan.segment);
   return found.slice(0, most).map((tone) => {

@@ -1,5 +1,6 @@
 import fc from "fast-check";
 import { describe, expect, it } from "vitest";
+import { wholeAccount } from "../../src/report/channel-account.ts";
 import { measuredDelay } from "../../src/report/measured-delay.ts";
 import { chainDelay } from "../../src/report/requirements.ts";
 import { densities } from "../../src/report/spectrum-account.ts";
@@ -169,6 +170,25 @@ describe("books", () => {
         expect(Math.abs(delay.beyond_samples), name).toBeLessThan(0.1);
         expect(delay.correlation, name).toBeGreaterThan(0.1);
       }
+    }
+  });
+
+  it("adds up over the whole chain: all stages together against their input", () => {
+    for (const name of [
+      "mean, then every tenth",
+      "trailing filter, every fourth, trend",
+      "even centred mean",
+    ]) {
+      const plan = planOf(CHAINS[name]!);
+      const { results } = run(plan, roughRecord(3000));
+      const whole = wholeAccount(plan, 0, results[0]!)!;
+      expect(whole, name).not.toBeNull();
+      for (const b of whole.bands) expect(Math.abs(b.closure!), name).toBeLessThan(1e-9);
+      // Segments are few and the filters long beside them: as predicted within the interval is what can be asked.
+      expect(whole.bands[0]!.as_predicted, name).toBe(true);
+      expect(Math.abs(whole.delay_measured!.delay_s - whole.delay_measured!.stated_s), name).toBeLessThan(
+        0.5,
+      );
     }
   });
 
