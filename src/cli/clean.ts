@@ -16,6 +16,7 @@ import { DONE, NOT_MET, PART_DONE, WRONG } from "./exit-codes.ts";
 import { openJournal } from "./journal.ts";
 import { shownPath } from "./shown-path.ts";
 import { seriesSummary } from "./summary.ts";
+import { wrap } from "./text.ts";
 import { VERSION } from "./version.ts";
 
 export interface CleanOptions {
@@ -135,7 +136,8 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
       failed++;
       if (list.every((d) => d.file === loaded.shownName)) wrongByDesign++;
       journal.error({ ...fields, problems: list.map((d) => d.code) }, "not cleaned");
-      if (options.quiet !== true) streams.out(`${title}\n  verdict NOT CLEANED: ${list[0]!.problem}\n`);
+      if (options.quiet !== true)
+        streams.out(`${title}\n${wrap(`  verdict NOT CLEANED: ${list[0]!.problem}`, 80, " ".repeat(10))}\n`);
     }
   }
   if (wrongByDesign === series.length) return WRONG;

@@ -33,6 +33,13 @@ export function verdictOf(
         )} dB; this was accepted in the pipeline.`,
       );
   }
+  for (const [name, { counts }] of Object.entries(chain.channels)) {
+    const { missing, screened, ...present } = counts;
+    if (missing + screened > 0 && Object.values(present).every((n) => n === 0))
+      remarks.push(
+        `Channel ${name} has no value at all in the clean series: see its missing cells, the gaps, and the length of the windows.`,
+      );
+  }
   if (Math.abs(chain.delay_s) > 0)
     remarks.push(
       `The clean series is late by ${Number(chain.delay_s.toPrecision(6))} s: a change at t shows at t plus that.`,
