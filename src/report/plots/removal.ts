@@ -31,7 +31,7 @@ export function removalPlot(id: string, r: RemovalAccount, unit: string, title: 
     y: {
       scale: y,
       ticks: y.ticks(5).map((v) => ({ at: v, text: number(v) })),
-      label: `rms removed, ${unit}`,
+      label: `rms removed, mean included, ${unit}`,
     },
     traces: [
       {
