@@ -1,6 +1,7 @@
 /**
  * The shortest least-squares filter that keeps a mask. At each length the weight of the stopband against the passband
  * is sought at which both use the same share of what they are allowed; its integrals are computed once a length.
+ * References: those of least-squares.ts for the design; the search for the balance has no published source.
  */
 import { largestDontCareGain } from "./design-bands.ts";
 import { DOUBT, edgeSides, worstExcess } from "./edge-excess.ts";
