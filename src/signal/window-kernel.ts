@@ -179,10 +179,10 @@ export class WindowKernel implements Kernel {
   private runAround(k: number, lo: number, hi: number): { from: number; to: number } | undefined {
     const there = (i: number) =>
       i >= lo && i < hi && !Number.isNaN(this.buffer.values[i - this.buffer.base]!);
-    const own = there(k) ? k : this.options.betweenSamples && there(k + 1) ? k + 1 : undefined;
-    if (own === undefined) return undefined;
-    let from = own;
-    let to = own + 1;
+    // An output between two samples lies inside the run only when both are there.
+    if (!there(k) || (this.options.betweenSamples && !there(k + 1))) return undefined;
+    let from = k;
+    let to = k + 1;
     while (there(from - 1)) from--;
     while (there(to)) to++;
     return { from, to };
