@@ -7,8 +7,16 @@ import { MOST_EQUIRIPPLE_TAPS } from "./equiripple.ts";
 import { type MaskFilter, shortestEquiripple } from "./equiripple-search.ts";
 import { type KaiserFilter, shortestKaiser } from "./kaiser-search.ts";
 import { shortestLeastSquares } from "./least-squares-search.ts";
-import { type Achieved, limitsOf, type Mask, refuseImpossibleMask, transitionWidth } from "./mask.ts";
-import { peakGain } from "./response.ts";
+import {
+  type Achieved,
+  achievedBy,
+  keeps,
+  limitsOf,
+  type Mask,
+  refuseImpossibleMask,
+  transitionWidth,
+} from "./mask.ts";
+import { gainAt, peakGain } from "./response.ts";
 import type { Lengths } from "./shortest-length.ts";
 
 export { achievedBy } from "./mask.ts";
@@ -87,10 +95,10 @@ export function designBySpecification(spec: Specification): SpecifiedFilter {
 /** Least squares is left out: on the same mask it cannot be shorter than equiripple. */
 function shortestOfAll(spec: Specification, lengths: Lengths, kept: string): SpecifiedFilter {
   const kaiser = shortestKaiser(spec, lengths, MOST_TAPS["windowed-sinc"]);
-  const free = shortestEquiripple(spec, lengths, MOST_TAPS.equiripple);
+  const free = unbiasedEquiripple(spec, lengths);
   const peaked = free !== null && excess_dB(spec, free.taps) > TOO_MUCH_dB;
   // A wide transition in which the gain runs free is narrowed to the width of the other.
-  const calm = peaked ? shortestEquiripple(evenTransitions(spec), lengths, MOST_TAPS.equiripple) : free;
+  const calm = peaked ? unbiasedEquiripple(evenTransitions(spec), lengths) : free;
   const equiripple = calm !== null && excess_dB(spec, calm.taps) <= TOO_MUCH_dB ? calm : null;
   const aside =
     peaked && free !== null
@@ -99,7 +107,7 @@ function shortestOfAll(spec: Specification, lengths: Lengths, kept: string): Spe
   if (equiripple !== null && (kaiser === null || equiripple.taps.length < kaiser.taps.length)) {
     const other =
       kaiser === null ? "no Kaiser window keeps it at all" : `a Kaiser window needs ${kaiser.taps.length}`;
-    const why = `equiripple, the shortest: ${equiripple.taps.length} taps keep ${kept}, ${other}${aside}`;
+    const why = `equiripple with its gain set to exactly 1, the shortest: ${equiripple.taps.length} taps keep ${kept}, ${other}${aside}`;
     return described(spec, equiripple, "equiripple", why);
   }
   const found = needed(kaiser, spec, "windowed-sinc");
@@ -111,6 +119,26 @@ function shortestOfAll(spec: Specification, lengths: Lengths, kept: string): Spe
         : "equiripple is no shorter";
   const why = `windowed sinc with a Kaiser window (beta ${found.beta.toFixed(3)}): ${found.taps.length} taps keep ${kept}; ${reason}${aside}`;
   return described(spec, found, "windowed-sinc", why);
+}
+
+/**
+ * The equiripple criterion leaves the gain at zero anywhere within the ripple, which would shift a steady level by
+ * that much. Half the ripple is asked for, and the taps are scaled to a gain of 1 at zero (high-pass: at Nyquist;
+ * band-pass: at the band's centre); the whole ripple then holds, and is verified.
+ */
+function unbiasedEquiripple(spec: Mask, lengths: Lengths): MaskFilter | null {
+  const half = spec.ripple_dB / 2;
+  const tighter = { ...spec, ripple_dB: half, attenuation_dB: spec.attenuation_dB + half };
+  const found = shortestEquiripple(tighter, lengths, MOST_TAPS.equiripple);
+  if (found === null) return null;
+  const [low, high] = spec.pass as [number, number];
+  const at = spec.shape === "high-pass" ? 0.5 : spec.shape === "band-pass" ? (low + high) / 2 : 0;
+  const gain = gainAt(found.taps, at);
+  const taps = found.taps.map((w) => w / gain);
+  const achieved = achievedBy(taps, spec);
+  return keeps(achieved, spec)
+    ? { taps, achieved, largestDontCareGain: found.largestDontCareGain / gain }
+    : null;
 }
 
 function described(

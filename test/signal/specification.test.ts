@@ -4,6 +4,7 @@ import { designEquiripple } from "../../src/signal/equiripple.ts";
 import { weightedBands } from "../../src/signal/equiripple-search.ts";
 import { bandIntegrals, solveNormalEquations } from "../../src/signal/least-squares.ts";
 import { keeps, type Mask } from "../../src/signal/mask.ts";
+import { gainAt } from "../../src/signal/response.ts";
 import { achievedBy, designBySpecification } from "../../src/signal/specification.ts";
 import { designWindowedSinc } from "../../src/signal/windowed-sinc.ts";
 import { kept, randomMask, shapes } from "./masks.ts";
@@ -117,7 +118,9 @@ describe("by specification: equiripple", () => {
     const calm = kept(mask, "auto");
     expect(calm.largestGain).toBeLessThan(1.5);
     expect(calm.warning).toBeUndefined();
-    expect(calm.why).toMatch(new RegExp(`${made.taps.length} taps would do`));
+    const would = Number(/; (\d+) taps would do/.exec(calm.why)?.[1]);
+    expect(would).toBeGreaterThanOrEqual(made.taps.length);
+    expect(would).toBeLessThan(calm.taps.length);
     expect(calm.taps.length).toBeLessThan(kept(mask, "windowed-sinc").taps.length);
   });
 });
@@ -141,15 +144,20 @@ describe("by specification: least squares", () => {
 });
 
 describe("by specification: auto", () => {
-  it("takes the shortest, and says why in one sentence", () => {
+  it("takes the shortest that leaves a steady level where it is, and says why in one sentence", () => {
     for (let i = 0; i < 8; i++)
       for (const shape of ["low-pass", "high-pass"] as const) {
         const mask = randomMask(shape, 5000 + i);
         const made = kept(mask, "auto");
-        const lengths = (["windowed-sinc", "equiripple", "least-squares"] as const).map(
-          (method) => designBySpecification({ ...mask, method }).taps.length,
-        );
-        expect(made.taps.length).toBe(Math.min(...lengths));
+        const taps = (method: "windowed-sinc" | "equiripple", more: Partial<Mask> = {}) =>
+          designBySpecification({ ...mask, ...more, method }).taps.length;
+        // Never longer than a Kaiser window, nor than equiripple at half the ripple (which can be scaled to 1);
+        // never shorter than equiripple, which may shift a level.
+        expect(made.taps.length).toBeGreaterThanOrEqual(taps("equiripple"));
+        expect(made.taps.length).toBeLessThanOrEqual(taps("windowed-sinc"));
+        const half = mask.ripple_dB / 2;
+        const tighter = { ripple_dB: half, attenuation_dB: mask.attenuation_dB + half };
+        expect(made.taps.length).toBeLessThanOrEqual(taps("equiripple", tighter));
         expect(made.why).toContain(`${made.taps.length} taps keep`);
       }
   });
@@ -169,5 +177,23 @@ describe("by specification: auto", () => {
     expect(() => designBySpecification({ ...mask, method: "least-squares" })).toThrow(
       /no least-squares filter/,
     );
+  });
+});
+
+describe("by specification: a steady level stays that level", () => {
+  it("with auto, whatever it chooses: gain exactly 1 at zero, at Nyquist, or at the band's centre", () => {
+    for (const [shape, pass, stop, at] of [
+      ["low-pass", [0.05], [0.09], 0],
+      ["low-pass", [0.2], [0.24], 0],
+      ["band-stop", [0.1, 0.3], [0.15, 0.25], 0],
+      ["high-pass", [0.2], [0.15], 0.5],
+      ["band-pass", [0.15, 0.25], [0.1, 0.3], 0.2],
+    ] as const) {
+      const mask = { shape, pass, stop, ripple_dB: 0.5, attenuation_dB: 50 };
+      const made = designBySpecification({ ...mask, method: "auto", parity: "odd" });
+      expect(Math.abs(gainAt(made.taps, at) - 1), made.why).toBeLessThan(1e-12);
+      expect(made.achieved.ripple_dB).toBeLessThanOrEqual(0.5);
+      expect(made.achieved.attenuation_dB).toBeGreaterThanOrEqual(50);
+    }
   });
 });
