@@ -170,13 +170,16 @@ export class RowCurves {
       while (this.bracket < last - 1 && t[this.bracket + 1]! <= at) this.bracket++;
       const hasAll = cell ? t[last]! >= at + this.half_us : last - this.bracket - 1 >= BEYOND[this.curve];
       if (!ended && !hasAll) return;
-      this.point(at, emit);
+      this.point(emit);
     }
   }
 
-  private point(at: number, emit: Emit): void {
-    const { t, y, bracket: k, rows, slack_us } = this;
-    const hit = at - t[k]! <= slack_us ? k : k + 1 < rows && t[k + 1]! - at <= slack_us ? k + 1 : -1;
+  private point(emit: Emit): void {
+    const { t, y, bracket: k, rows, slack_us, half_us } = this;
+    // Times are taken from the point itself, not from the run's start, so that no bit depends on where that was.
+    const since = timeSince(this.grid, this.next, this.origin_us + t[k]!);
+    const place = (i: number) => t[i]! - t[k]! - since;
+    const hit = since <= slack_us ? k : k + 1 < rows && place(k + 1) <= slack_us ? k + 1 : -1;
     const cell = this.curve === "cell-mean";
     if (hit >= 0 && !cell) {
       this.exact++;
@@ -187,44 +190,44 @@ export class RowCurves {
     let from = Math.max(0, k - beyond);
     let to = Math.min(rows, k + 2 + beyond);
     if (cell) {
-      while (from > 0 && t[from]! > at - this.half_us) from--;
-      while (to < rows && t[to - 1]! < at + this.half_us) to++;
+      while (from > 0 && place(from) > -half_us) from--;
+      while (to < rows && place(to - 1) < half_us) to++;
     }
-    const ts = t.subarray(from, to);
+    const ts = Float64Array.from({ length: to - from }, (_, i) => place(from + i));
     const ys = y.subarray(from, to);
-    const value = this.valueAt(ts, ys, at);
+    const value = this.valueAt(ts, ys);
     if (Number.isNaN(value)) {
       this.blankNearEnds++;
       this.store(Number.NaN, MISSING | END, emit);
       return;
     }
-    const gap = cell ? this.longestStep(ts, at) : t[k + 1]! - t[k]!;
+    const gap = cell ? this.longestStep(ts) : t[k + 1]! - t[k]!;
     if (k + 1 < rows) {
-      const u = (at - t[k]!) / (t[k + 1]! - t[k]!);
+      const u = since / (t[k + 1]! - t[k]!);
       this.places[Math.min(PLACES - 1, Math.max(0, Math.floor(u * PLACES)))]!++;
     }
     this.put(value, gap > this.neighbour_us ? FILLED : 0, emit);
   }
 
-  private valueAt(t: Float64Array, y: Float64Array, at: number): number {
+  /** Value at time 0 of rows at times t. */
+  private valueAt(t: Float64Array, y: Float64Array): number {
     switch (this.curve) {
       case "monotone-cubic":
-        return cubicAt(t, y, monotoneCubicSlopes(t, y), at);
+        return cubicAt(t, y, monotoneCubicSlopes(t, y), 0);
       case "local-cubic":
-        return cubicAt(t, y, localCubicSlopes(t, y), at);
+        return cubicAt(t, y, localCubicSlopes(t, y), 0);
       case "band-limited":
-        return bandLimitedAtTime(t, y, at, (t[t.length - 1]! - t[0]!) / (t.length - 1), SINC);
+        return bandLimitedAtTime(t, y, 0, (t[t.length - 1]! - t[0]!) / (t.length - 1), SINC);
       case "cell-mean":
-        return cellMeans(t, y, Float64Array.of(at - this.half_us, at + this.half_us))[0]!;
+        return cellMeans(t, y, Float64Array.of(-this.half_us, this.half_us))[0]!;
     }
   }
 
   /** Longest step between the rows that a cell rests on. */
-  private longestStep(t: Float64Array, at: number): number {
+  private longestStep(t: Float64Array): number {
     let longest = 0;
     for (let i = 1; i < t.length; i++)
-      if (t[i]! > at - this.half_us && t[i - 1]! < at + this.half_us)
-        longest = Math.max(longest, t[i]! - t[i - 1]!);
+      if (t[i]! > -this.half_us && t[i - 1]! < this.half_us) longest = Math.max(longest, t[i]! - t[i - 1]!);
     return longest;
   }
 
