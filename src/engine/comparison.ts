@@ -3,6 +3,10 @@ import { SampleBuffer } from "../signal/sample-buffer.ts";
 import type { IndexRange } from "./index-range.ts";
 import { RemovalStrip } from "./removal-strip.ts";
 import { Extremes, PairSums } from "./sums.ts";
+import { TimeStrip } from "./time-strip.ts";
+
+/** Columns of a stage's picture: enough for the eye, and the account stays small. */
+const STRIP_COLUMNS = 256;
 
 /**
  * Compares one channel before and after a stage, sample by sample on the stage's input grid: output sample
@@ -12,6 +16,8 @@ export class Comparison {
   readonly sums = new PairSums();
   /** When it was removed, on the input's grid. */
   readonly removal = new RemovalStrip();
+  readonly beforeStrip: TimeStrip;
+  readonly afterStrip: TimeStrip;
   readonly before = new Extremes();
   readonly after = new Extremes();
   private readonly delay: number | null;
@@ -24,16 +30,20 @@ export class Comparison {
   constructor(delay: number | null, range: IndexRange) {
     this.delay = delay;
     this.range = range;
+    this.beforeStrip = new TimeStrip(range, STRIP_COLUMNS);
+    this.afterStrip = new TimeStrip(range, STRIP_COLUMNS);
   }
 
   pushBefore(block: GridBlock): void {
     if (this.delay !== null) this.waiting.append(block);
     this.before.addBlock(block, this.range);
+    this.beforeStrip.push(block);
     if (this.early.length > 0) this.settleEarly();
   }
 
   pushAfter(block: GridBlock): void {
     this.after.addBlock(block, this.range);
+    this.afterStrip.push(block);
     const { delay } = this;
     if (delay === null) return;
     if (delay >= 0) this.compare(block.values, block.first, block.values.length, delay);

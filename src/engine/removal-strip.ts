@@ -7,6 +7,8 @@ export interface RemovalColumn {
   readonly samples: number;
   /** Sum of the removed values squared. */
   readonly square: number;
+  readonly low: number;
+  readonly high: number;
   /** Largest removed value by size, with its sign, and its grid index. */
   readonly largest: number;
   readonly largestAt: number;
@@ -19,13 +21,15 @@ export interface RemovalColumn {
 export class RemovalStrip {
   width = 1;
   private columns: RemovalColumn[] = [];
-  private readonly open = { first: 0, samples: 0, square: 0, largest: 0, largestAt: 0 };
+  private readonly open = { first: 0, samples: 0, square: 0, low: 0, high: 0, largest: 0, largestAt: 0 };
 
   add(index: number, removed: number): void {
     const { open } = this;
     if (index >= open.first + this.width || open.samples === 0) this.start(index);
     open.samples++;
     open.square += removed * removed;
+    if (open.samples === 1 || removed < open.low) open.low = removed;
+    if (open.samples === 1 || removed > open.high) open.high = removed;
     if (Math.abs(removed) > Math.abs(open.largest) || open.samples === 1) {
       open.largest = removed;
       open.largestAt = index;
@@ -45,7 +49,16 @@ export class RemovalStrip {
     const last = this.columns.at(-1);
     // After widening, the column just closed may be the one that goes on.
     if (last !== undefined && last.first === first) Object.assign(this.open, this.columns.pop());
-    else Object.assign(this.open, { first, samples: 0, square: 0, largest: 0, largestAt: index });
+    else
+      Object.assign(this.open, {
+        first,
+        samples: 0,
+        square: 0,
+        low: 0,
+        high: 0,
+        largest: 0,
+        largestAt: index,
+      });
   }
 
   private widen(): void {
@@ -63,6 +76,8 @@ export class RemovalStrip {
         first,
         samples: last.samples + column.samples,
         square: last.square + column.square,
+        low: Math.min(last.low, column.low),
+        high: Math.max(last.high, column.high),
         largest: bigger ? column.largest : last.largest,
         largestAt: bigger ? column.largestAt : last.largestAt,
       };

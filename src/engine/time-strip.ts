@@ -2,11 +2,12 @@ import type { GridBlock } from "../signal/grid-block.ts";
 import { stateOf } from "../signal/marks.ts";
 import type { IndexRange } from "./index-range.ts";
 
+/** Columns of a strip that nobody asked otherwise of. */
 const COLUMNS = 512;
 
 /**
  * Lowest and highest value per column of time, for a picture of a record of any length in bounded memory:
- * columns are 2^n samples wide, anchored to the absolute index, and double when there would be more than 512.
+ * columns are 2^n samples wide, anchored to the absolute index, and double when there would be more than the most.
  */
 export class TimeStrip {
   /** Samples in a column. */
@@ -18,9 +19,11 @@ export class TimeStrip {
   /** Place in STATES of the worst state in each column. */
   worst: number[] = [];
   private readonly range: IndexRange;
+  private readonly most: number;
 
-  constructor(range: IndexRange) {
+  constructor(range: IndexRange, most = COLUMNS) {
     this.range = range;
+    this.most = most;
   }
 
   push(block: GridBlock): void {
@@ -31,7 +34,7 @@ export class TimeStrip {
       const k = block.first + i;
       let column = Math.floor(k / this.width);
       if (Number.isNaN(this.first)) this.first = column;
-      while (column - this.first >= COLUMNS) {
+      while (column - this.first >= this.most) {
         this.widen();
         column = Math.floor(k / this.width);
       }

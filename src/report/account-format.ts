@@ -128,6 +128,8 @@ export interface ChannelAccount {
   variance_removed: number | null;
   /** Delay by cross-correlation of input and output, beside the stated one; correlation at its peak. */
   delay_measured: { delay_s: number; stated_s: number; correlation: number } | null;
+  /** For plotting: before and after on the stage's own grids. */
+  strip: StripAccount | null;
   /** When it was removed: rms per column of time, and the largest single removals. */
   removal: RemovalAccount | null;
   /** How the removal was measured: sums over samples, or segment spectra where the delay is not whole. */
@@ -155,6 +157,9 @@ export interface RemovalAccount {
   column_s: number;
   /** rms of what was removed in each column; null where nothing could be compared. */
   rms: (number | null)[];
+  /** Lowest and highest removed value in each column. */
+  low: (number | null)[];
+  high: (number | null)[];
   /** The largest removed values, each the largest of its column and farther apart than one column. */
   events: { time: string; removed: number; times_rms: number }[];
 }
@@ -260,16 +265,19 @@ export interface ChainChannelAccount {
    */
   removal: ChannelAccount | null;
   /** For plotting: lowest and highest per column of time, on the resampled input, the clean series. */
-  strip: {
-    from: string;
-    column_s: number;
-    in_low: (number | null)[];
-    in_high: (number | null)[];
-    out_low: (number | null)[];
-    out_high: (number | null)[];
-    /** Worst state of the clean series in each column; null where it has no sample. */
-    out_state: (State | null)[];
-  };
+  strip: StripAccount;
+}
+
+/** Lowest and highest value per column of time, before and after. */
+export interface StripAccount {
+  from: string;
+  column_s: number;
+  in_low: (number | null)[];
+  in_high: (number | null)[];
+  out_low: (number | null)[];
+  out_high: (number | null)[];
+  /** Worst state of the clean series in each column; null where it has no sample. */
+  out_state: (State | null)[];
 }
 
 export interface RequirementAccount {

@@ -89,6 +89,16 @@ const spectrum = z.object({
   psd_removed: numbers,
 });
 
+const strip = z.object({
+  from: time,
+  column_s: num,
+  in_low: z.array(maybe),
+  in_high: z.array(maybe),
+  out_low: z.array(maybe),
+  out_high: z.array(maybe),
+  out_state: z.array(states.keyof().nullable()),
+});
+
 const channel = z.object({
   unit: text,
   accounted: z.boolean(),
@@ -101,11 +111,14 @@ const channel = z.object({
   variance_removed_pct: maybe,
   variance_removed: maybe,
   delay_measured: z.object({ delay_s: num, stated_s: num, correlation: num }).nullable(),
+  strip: strip.nullable(),
   removal: z
     .object({
       from: time,
       column_s: num,
       rms: z.array(maybe),
+      low: z.array(maybe),
+      high: z.array(maybe),
       events: z.array(z.object({ time, removed: num, times_rms: num })),
     })
     .nullable(),
@@ -169,16 +182,6 @@ const stage = z.object({
   channels: z.record(text, channel),
   alias: alias.nullable(),
   notes: z.record(text, z.unknown()),
-});
-
-const strip = z.object({
-  from: time,
-  column_s: num,
-  in_low: z.array(maybe),
-  in_high: z.array(maybe),
-  out_low: z.array(maybe),
-  out_high: z.array(maybe),
-  out_state: z.array(states.keyof().nullable()),
 });
 
 const chain = z.object({

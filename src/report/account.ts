@@ -1,16 +1,13 @@
 /** Assembles the account of one series (or one day of it). */
 import type { ChannelResult } from "../engine/run-chain.ts";
 import type { Scope } from "../engine/scope.ts";
-import type { TimeStrip } from "../engine/time-strip.ts";
 import type { Timing } from "../engine/timing.ts";
 import type { FileAccount } from "../logs/rows.ts";
 import { isoTime } from "../outputs/cell-text.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import type { Pipeline } from "../pipeline/schema.ts";
 import { convolveTaps } from "../signal/convolve.ts";
-import type { Grid } from "../signal/grid.ts";
-import { intervalSeconds, timeOf } from "../signal/grid.ts";
-import { STATES } from "../signal/marks.ts";
+import { intervalSeconds } from "../signal/grid.ts";
 import { stepResponse } from "../signal/response.ts";
 import type {
   Account,
@@ -25,6 +22,7 @@ import { CAUTIONS } from "./cautions.ts";
 import { counted, wholeAccount } from "./channel-account.ts";
 import { chainDelay, judgeRequirements } from "./requirements.ts";
 import { gridStageAccount, lookAhead, stageAccount, stageDesignAccount } from "./stage-account.ts";
+import { stripAccount } from "./strip-account.ts";
 import { verdictOf } from "./verdict.ts";
 
 export const ACCOUNT_FORMAT = "forebay-account/1";
@@ -201,7 +199,12 @@ function chainAccount(parts: AccountParts): ChainAccount {
             rms_out: rms(accounted.at(-1)?.comparison?.sums.figures()?.varianceOut),
             counts: counted(last).counts,
             removal: wholeAccount(plan, c, result),
-            strip: strip(result.inputStrip, plan.gridStage.design.grid, result.cleanStrip, plan.outGrid),
+            strip: stripAccount(
+              result.inputStrip,
+              plan.gridStage.design.grid,
+              result.cleanStrip,
+              plan.outGrid,
+            ),
           },
         ];
       }),
@@ -228,47 +231,6 @@ function chainRise(plan: Plan): number | null {
   if (taps.length < 2) return null;
   const { rise_10_90 } = stepResponse(taps);
   return rise_10_90 === null ? null : rise_10_90 * interval;
-}
-
-/** Brings the envelopes before and after to the same columns of time: those of the coarser of the two. */
-function strip(
-  before: TimeStrip,
-  grid: Grid,
-  after: TimeStrip,
-  outGrid: Grid,
-): ChainAccount["channels"][string]["strip"] {
-  const width_s = (s: TimeStrip, g: Grid) => s.width * intervalSeconds(g);
-  const column_s = Math.max(width_s(before, grid), width_s(after, outGrid));
-  const start_us = Number.isNaN(before.first) ? 0 : timeOf(grid, before.first * before.width);
-  const columns = Math.ceil((before.low.length * width_s(before, grid)) / column_s);
-  const spread = (s: TimeStrip, g: Grid) => {
-    const low: (number | null)[] = new Array(columns).fill(null);
-    const high: (number | null)[] = new Array(columns).fill(null);
-    const worst: (number | null)[] = new Array(columns).fill(null);
-    for (let i = 0; i < s.low.length; i++) {
-      const a = s.low[i];
-      const b = s.high[i];
-      if (a === undefined || b === undefined) continue;
-      const t_us = timeOf(g, (s.first + i) * s.width);
-      const at = Math.min(columns - 1, Math.max(0, Math.floor((t_us - start_us) / 1e6 / column_s)));
-      worst[at] = Math.max(worst[at] ?? 0, s.worst[i] ?? 0);
-      if (!Number.isFinite(a) || !Number.isFinite(b)) continue;
-      low[at] = Math.min(low[at] ?? a, a);
-      high[at] = Math.max(high[at] ?? b, b);
-    }
-    return { low, high, worst };
-  };
-  const x = spread(before, grid);
-  const y = spread(after, outGrid);
-  return {
-    from: isoTime(start_us),
-    column_s,
-    in_low: x.low,
-    in_high: x.high,
-    out_low: y.low,
-    out_high: y.high,
-    out_state: y.worst.map((place) => (place === null ? null : STATES[place]!)),
-  };
 }
 
 /** The account as it is written: stable order, two blanks of indent, long lists of numbers on one line. */

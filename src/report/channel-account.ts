@@ -13,6 +13,7 @@ import { bandPower } from "../signal/welch.ts";
 import type { ChannelAccount, Extreme } from "./account-format.ts";
 import { measuredDelay } from "./measured-delay.ts";
 import { bandAccounts, densities, spectrumAccount, toneAccounts } from "./spectrum-account.ts";
+import { stripAccount } from "./strip-account.ts";
 
 /** What a measure must have to be accounted for. */
 type Measured = Pick<StageMeasure, "comparison" | "cross" | "spectra" | "counts">;
@@ -54,6 +55,7 @@ export function channelAccount(
     basis: sums !== null ? "samples" : d !== null && !whole ? "segment spectra" : null,
     variance_removed: sums?.varianceRemoved ?? (d === null ? null : power(d, d.rr)),
     delay_measured: measure.cross === null ? null : delayMeasured(planned, measure.cross),
+    strip: stripAccount(comparison.beforeStrip, grid, comparison.afterStrip, outGrid),
     removal: removalAccount(comparison, grid),
     extremes: extremes(comparison, grid, outGrid),
     bands: d === null ? [] : bandAccounts(d, plan.report.bands, taps, plan.report.thirdOctaves),
@@ -72,11 +74,15 @@ function removalAccount(comparison: Comparison, grid: Grid): ChannelAccount["rem
   const first = columns[0]?.first;
   if (first === undefined) return null;
   const count = (columns.at(-1)!.first - first) / width + 1;
-  const rms: (number | null)[] = new Array(count).fill(null);
+  const none = (): (number | null)[] => new Array(count).fill(null);
+  const [rms, low, high] = [none(), none(), none()];
   let square = 0;
   let samples = 0;
   for (const column of columns) {
-    rms[(column.first - first) / width] = Math.sqrt(column.square / column.samples);
+    const at = (column.first - first) / width;
+    rms[at] = Math.sqrt(column.square / column.samples);
+    low[at] = column.low;
+    high[at] = column.high;
     square += column.square;
     samples += column.samples;
   }
@@ -93,6 +99,8 @@ function removalAccount(comparison: Comparison, grid: Grid): ChannelAccount["rem
     from: isoTime(timeOf(grid, first)),
     column_s: width * intervalSeconds(grid),
     rms,
+    low,
+    high,
     events: events.map((c) => ({
       time: isoTime(timeOf(grid, c.largestAt)),
       removed: c.largest,
@@ -162,6 +170,7 @@ export function unmeasured(unit: string): Omit<ChannelAccount, "counts" | "holds
     variance_removed_pct: null,
     variance_removed: null,
     delay_measured: null,
+    strip: null,
     removal: null,
     basis: null,
     extremes: null,

@@ -1,10 +1,12 @@
 /** One stage of the report: its sentence, its pictures, its figures. */
 import type { ChannelAccount, StageAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
+import { foldPlot } from "./plots/folds.ts";
 import { psdPlot } from "./plots/psd.ts";
 import { removalPlot } from "./plots/removal.ts";
 import { responsePlot } from "./plots/response.ts";
 import { stepPlot } from "./plots/step.ts";
+import { stripPlot } from "./plots/strip.ts";
 import {
   count,
   dB,
@@ -26,6 +28,7 @@ export function stageSection(s: StageAccount): string {
     alias(s),
     responsePlot(anchor("response", s.place), s, `Stage ${s.place}, ${s.stage}: gain against frequency`),
     stepPlot(anchor("step", s.place), s, `Stage ${s.place}, ${s.stage}: answer to a sudden step`),
+    foldPlot(anchor("folds", s.place), s, `Stage ${s.place}, ${s.stage}: where frequencies land`),
     folds(s),
     ...Object.entries(s.channels).map(([name, c]) => channel(s, name, c)),
     details(s),
@@ -168,6 +171,10 @@ export function channelSection(id: string, name: string, c: ChannelAccount): str
             t.folds ? `${withPeriod(t.lands_at_Hz)}, folded` : withPeriod(t.lands_at_Hz),
           ]),
         );
+  const overlay =
+    c.strip === null
+      ? ""
+      : stripPlot(`strip-${id}`, { unit: c.unit, strip: c.strip }, null, `${name}: before and after`);
   const r = c.removal;
   const removal =
     r === null
@@ -198,7 +205,7 @@ export function channelSection(id: string, name: string, c: ChannelAccount): str
             3,
           )} and ${number(p.interval_95.upper, 3)} times those shown.`,
         )}</p>`;
-  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what was taken out`, ["figure", "value"], rows)}${bands}${tones}${spectrum}${removal}`;
+  return `<h3 id="${id}">${escaped(name)}</h3>${htmlTable(`t-removed-${id}`, `${name}: what was taken out`, ["figure", "value"], rows)}${overlay}${bands}${tones}${spectrum}${removal}`;
 }
 
 function details(s: StageAccount): string {

@@ -41,10 +41,14 @@ figcaption{color:var(--soft);font-size:.92rem}
 .trace.before{stroke:var(--before);stroke-dasharray:7 4}
 .trace.after{stroke:var(--after)}
 .trace.removed{stroke:var(--removed);stroke-dasharray:2 3}
+.band.removed{fill:var(--removed);fill-opacity:.35;stroke:none}
+.trace.limit{stroke:var(--ink);stroke-width:1.2}
 .band.before{fill:var(--before);fill-opacity:.35;stroke:none}
 .state.whole{fill:var(--after)}
 .state.part{fill:var(--before)}
 .state.none{fill:var(--removed)}
+.kept{fill:var(--good);fill-opacity:.15}
+.mark{fill:var(--removed);stroke:var(--ground);stroke-width:1}
 .interval{stroke:var(--ink);stroke-width:1.4;fill:none}
 .legend{margin:.2rem 0;font:14px system-ui,sans-serif}
 .legend span{white-space:nowrap;margin-right:1rem}

@@ -1,6 +1,6 @@
 import { scaleLinear, scaleUtc } from "d3-scale";
 import { area } from "d3-shape";
-import type { ChainChannelAccount, State } from "../account-format.ts";
+import type { State, StripAccount } from "../account-format.ts";
 import { number, timeForPeople } from "../text.ts";
 import { clockFormat } from "./clock.ts";
 import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./frame.ts";
@@ -8,7 +8,7 @@ import { BOTTOM, HEIGHT, LEFT, plot, RIGHT, type Scale, TOP, WIDTH } from "./fra
 /** Lowest to highest value per column of time, resampled input behind, clean series before it; gaps stay open. */
 export function stripPlot(
   id: string,
-  channel: ChainChannelAccount,
+  channel: { readonly unit: string; readonly strip: StripAccount },
   first: string | null,
   title: string,
 ): string {
@@ -67,7 +67,7 @@ export function stripPlot(
     x: {
       scale: x as unknown as Scale,
       ticks: ticks.map((d) => ({ at: d.getTime(), text: format(d) })),
-      label: `time, UTC; the record begins ${timeForPeople(first)}`,
+      label: first === null ? "time, UTC" : `time, UTC; the record begins ${timeForPeople(first)}`,
     },
     y: { scale: y, ticks: y.ticks(6).map((v) => ({ at: v, text: number(v, 6) })), label: channel.unit },
     traces: [
