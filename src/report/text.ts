@@ -44,7 +44,8 @@ const TIMES = [
 /** A length of time with the unit that reads best. */
 export function duration(s: number | null, digits = 4): string {
   if (s === null) return "the whole record";
-  if (s === 0) return `0${NARROW}s`;
+  // Below a picosecond stands only rounding.
+  if (Math.abs(s) < 1e-12) return `0${NARROW}s`;
   for (const [unit, factor, enough] of TIMES) {
     const n = Math.abs(s) / factor;
     if ((n >= 1 && Math.abs(n - Math.round(n)) < 1e-9) || n >= enough)

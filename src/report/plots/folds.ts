@@ -27,7 +27,9 @@ export function foldPlot(id: string, stage: StageAccount, title: string): string
   const last = points.at(-1)!;
   if (last[0] < legs * after)
     points[legs] = [end, legs % 2 === 1 ? end - (legs - 1) * after : legs * after - end];
-  const tones = Object.values(stage.channels).flatMap((c) => c.tones.filter((t) => t.folds));
+  const tones = Object.values(stage.channels).flatMap((c) =>
+    c.tones.filter((t) => t.folds && t.amplitude > 1e-3 * (c.rms_in ?? 0)),
+  );
   const marks = [
     ...stage.folds.map((f) => ({ f: f.frequency_Hz, lands: f.lands_at_Hz, text: `${f.frequency_Hz} Hz` })),
     ...tones

@@ -48,18 +48,26 @@ export function stripPlot(
       .digits(1);
     return `<path class="band ${kind}" d="${path(points) ?? ""}"/>`;
   };
-  // The clean series has fewer samples than columns have room for: a line through its columns' middles.
-  const middles = s.out_low.flatMap((v, i) => {
+  // The clean series has fewer samples than columns have room for: lines through its columns' lowest and highest,
+  // which are one line where it hardly moves inside a column.
+  const filled = s.out_low.flatMap((v, i) => {
     const w = s.out_high[i] ?? null;
-    return v === null || w === null ? [] : [[at(i) + s.column_s * 500, (v + w) / 2, i] as const];
+    return v === null || w === null ? [] : [{ t: at(i) + s.column_s * 500, low: v, high: w, i }];
   });
-  const spacing = Math.max(1, Math.round(columns / Math.max(1, middles.length)));
-  const after: (readonly [number, number | null])[] = [];
-  middles.forEach(([t, v, i], n) => {
-    const before = middles[n - 1];
-    if (before !== undefined && i - before[2] > 2 * spacing + 1) after.push([t, null]);
-    after.push([t, v]);
-  });
+  const spacing = Math.max(1, Math.round(columns / Math.max(1, filled.length)));
+  const thin = filled.every((c) => c.high - c.low < 0.02 * (high - low));
+  const through = (value: (c: (typeof filled)[number]) => number) => {
+    const line: (readonly [number, number | null])[] = [];
+    filled.forEach((c, n) => {
+      const before = filled[n - 1];
+      if (before !== undefined && c.i - before.i > 2 * spacing + 1) line.push([c.t, null]);
+      line.push([c.t, value(c)]);
+    });
+    return line;
+  };
+  const after = thin
+    ? [through((c) => (c.low + c.high) / 2)]
+    : [through((c) => c.low), through((c) => c.high)];
   return plot({
     id,
     title,
@@ -72,7 +80,11 @@ export function stripPlot(
     y: { scale: y, ticks: y.ticks(6).map((v) => ({ at: v, text: number(v, 6) })), label: channel.unit },
     traces: [
       { kind: "before", name: "before: lowest to highest", points: [] },
-      { kind: "after", name: "after", points: after },
+      ...after.map((points) => ({
+        kind: "after" as const,
+        name: thin ? "after" : "after: lowest and highest",
+        points,
+      })),
     ],
     under: band("before", s.in_low, s.in_high),
     extra: stateBar(s.out_state, (i) => x(at(i))),
