@@ -18,9 +18,17 @@ export interface Grid {
   readonly offset: number;
 }
 
-/** @param num, den  the interval in microseconds, at least 1; positive integers with num * den < 2^52 */
+/** Whether a grid of num / den microseconds can be held exactly: at least 1, in integers with num * den < 2^52. */
+export function isGridInterval(num: number, den: number): boolean {
+  return num >= den && den > 0 && Number.isInteger(num) && Number.isInteger(den) && num * den < 2 ** 52;
+}
+
+/**
+ * @param num, den  the interval in microseconds, positive integers in lowest terms
+ * @throws RangeError unless isGridInterval
+ */
 export function makeGrid(num: number, den: number, anchor_us = 0): Grid {
-  if (!(num >= den && den > 0 && Number.isInteger(num) && Number.isInteger(den) && num * den < 2 ** 52))
+  if (!isGridInterval(num, den))
     throw new RangeError(`grid interval ${num}/${den} us is outside what can be held exactly`);
   const evenNum = num % 2 === 0;
   const halfNum = evenNum ? num / 2 : num;

@@ -5,7 +5,7 @@
  */
 import type { z } from "zod";
 import { duration, instant, oneOf, rate, stageSettings, truth } from "../pipeline/kinds.ts";
-import { intervalSeconds, makeGrid } from "../signal/grid.ts";
+import { intervalSeconds, isGridInterval, makeGrid } from "../signal/grid.ts";
 import { methodSays, ROW_METHODS, rowKernelFor, rowPowerGain, rowsBeyond } from "./parts/row-methods.ts";
 import type { DesignOutcome, GridDesign, Problem, Signal, Stage } from "./stage.ts";
 
@@ -57,6 +57,18 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
     return { design: null, problems };
   }
   const step = s.interval?.us ?? s.rate!.interval_us;
+  if (!isGridInterval(step.num, step.den)) {
+    problems.push({
+      code: "grid-interval-range",
+      severity: "error",
+      path: [s.interval === undefined ? "rate" : "interval"],
+      problem: "times are held in whole microseconds, and this grid is finer",
+      given: (s.interval ?? s.rate!).text,
+      allowed: "an interval of 1 us or more",
+      todo: "use a longer interval, or correct the unit",
+    });
+    return { design: null, problems };
+  }
   const grid = makeGrid(step.num, step.den, s.anchor?.us ?? 0);
   const interval = intervalSeconds(grid);
   const longestGap_us =

@@ -57,7 +57,7 @@ export function chooseTaps(s: FirSettings, interval_s: number, problems: Problem
     return null;
   }
   try {
-    if (s.coefficients !== undefined) return given(s.coefficients);
+    if (s.coefficients !== undefined) return given(s.coefficients, problems);
     if (ways[0] === "size" && s.method === "savitzky-golay") return savitzkyGolay(s, problems);
     if (ways[0] === "size" && s.bands !== undefined) return byBands(s, s.bands, interval_s, problems);
     if (s.shape === undefined) {
@@ -82,7 +82,19 @@ export function chooseTaps(s: FirSettings, interval_s: number, problems: Problem
   }
 }
 
-function given(coefficients: readonly number[]): ChosenTaps {
+function given(coefficients: readonly number[], problems: Problem[]): ChosenTaps | null {
+  if (coefficients.every((w) => w === 0)) {
+    problems.push({
+      code: "nothing-passes",
+      severity: "error",
+      path: ["coefficients"],
+      problem: "taps that are all zero let nothing pass",
+      given: `${coefficients.length} zeros`,
+      allowed: "at least one tap other than zero",
+      todo: "give the filter's taps, or take the stage out",
+    });
+    return null;
+  }
   const taps = Float64Array.from(coefficients);
   const delay = groupDelayOf(taps);
   return {

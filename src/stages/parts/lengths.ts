@@ -34,10 +34,10 @@ export function windowPoints(
       code: "window-too-long",
       severity: "error",
       path,
-      problem: "the window holds too many samples",
+      problem: "the length holds too many samples",
       given: `${length.text} = ${below} samples`,
       allowed: `at most ${most} samples`,
-      todo: "decimate first, then smooth at the lower rate",
+      todo: "decimate first, and go on at the lower rate",
     });
     return undefined;
   }
