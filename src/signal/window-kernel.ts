@@ -38,6 +38,8 @@ export class WindowKernel implements Kernel {
   private readonly buffer = new SampleBuffer();
   /** Next index to compute on the input's grid. */
   private next = 0;
+  /** Outputs of the present batch that rest on a run inside their window, not on all of it. */
+  private readonly onRun = new Set<number>();
 
   constructor(options: WindowOptions) {
     this.options = options;
@@ -84,6 +86,7 @@ export class WindowKernel implements Kernel {
       }
     }
     this.carryMarks(marks, values);
+    this.onRun.clear();
     emit({ first: this.next / step, values, marks });
     this.next += count * step;
   }
@@ -152,7 +155,8 @@ export class WindowKernel implements Kernel {
       const y = ends === "turned" ? this.turned(from, run) : this.weightedPart(from, run.from, run.to);
       if (y !== undefined) {
         values[o] = y;
-        marks[o] = END;
+        marks[o] = END | this.carriedIn(run);
+        this.onRun.add(o);
         return;
       }
     }
@@ -223,6 +227,13 @@ export class WindowKernel implements Kernel {
     return ownThere ? MISSING | END : MISSING;
   }
 
+  private carriedIn(run: { from: number; to: number }): number {
+    const { marks, base } = this.buffer;
+    let held = 0;
+    for (let i = run.from; i < run.to; i++) held |= marks[i - base]! & CARRIED;
+    return held;
+  }
+
   /** Hands the marks of the samples in each window on to its output. */
   private carryMarks(marks: Uint8Array, values: Float64Array): void {
     const { marks: held, base, length } = this.buffer;
@@ -239,7 +250,7 @@ export class WindowKernel implements Kernel {
         // An absent sample hands nothing on: what was computed here does not rest on it.
         for (const to = Math.min(from + n, length); i < to; i++)
           if ((held[i]! & bit) !== 0 && (held[i]! & (MISSING | SCREENED)) === 0) seen = i;
-        if (seen >= from && seen >= 0 && !Number.isNaN(values[o]!)) marks[o]! |= bit;
+        if (seen >= from && seen >= 0 && !Number.isNaN(values[o]!) && !this.onRun.has(o)) marks[o]! |= bit;
       }
     }
   }

@@ -225,7 +225,8 @@ describe("trend", () => {
         (degree, c) => {
           const plan = planOf([RESAMPLE, { stage: "detrend", degree, over: "50 s" }]);
           const flat = run(plan, evenRows(new Float64Array(200).fill(c), 1_000_000));
-          for (const v of flat.clean[0]!) expect(v).toBe(0);
+          // A negative zero is nothing, too.
+          for (const v of flat.clean[0]!) expect(v + 0).toBe(0);
         },
       ),
       { numRuns: 30 },
