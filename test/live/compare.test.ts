@@ -150,13 +150,14 @@ describe("against SciPy", () => {
 
   it("Savitzky-Golay, 30 windows", () => {
     const windows = Array.from({ length: 30 }, () => {
-      const taps = 2 * whole(1, 25) + 1;
-      return { ask: "savitzky-golay", taps, degree: whole(0, Math.min(6, taps - 1)) };
+      // Beyond these SciPy's raw powers lose digits; there the taps are held to polynomials in test/signal.
+      const taps = 2 * whole(1, 12) + 1;
+      return { ask: "savitzky-golay", taps, degree: whole(0, Math.min(4, taps - 1)) };
     });
     ask(windows).forEach((a, i) => {
       const { taps, degree } = windows[i]!;
       expect(worst(savitzkyGolayTaps(taps, degree, "centre"), a.ok!), `${taps}, ${degree}`).toBeLessThan(
-        1e-9,
+        1e-11,
       );
     });
   });
