@@ -45,7 +45,7 @@ export interface Delay {
   readonly compensated_s: number;
 }
 
-/** Worst gain, on the design, of anything that folds into the band kept when samples are dropped. */
+/** Worst gain, on the design and against the band kept, of what folds into that band when samples are dropped. */
 export interface AliasDesign {
   readonly antiAlias: "designed" | "upstream" | "none";
   readonly accepted: boolean;
