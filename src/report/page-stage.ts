@@ -162,7 +162,7 @@ export function channelSection(id: string, name: string, c: ChannelAccount): str
       ? ""
       : htmlTable(
           `t-tones-${id}`,
-          `${name}: strongest tones before`,
+          `${name}: strongest tones before (of a thousand spectra of noise alone, one would show a false one)`,
           ["frequency", "amplitude before", "gain", "afterwards at"],
           c.tones.map((t) => [
             withPeriod(t.frequency_Hz),

@@ -249,6 +249,23 @@ describe("clean", () => {
     expect(text(folder, "shut-file")).toBe("not a folder");
   });
 
+  it("refuses hostile names in one diagnostic each, and never sends their signs to the terminal", () => {
+    const name = (text: string) => pipeline(SMOOTH).replace("{ x: {", `{ ${JSON.stringify(text)}: {`);
+    for (const hostile of [
+      "<img src=x onerror=alert(1)>",
+      "=cmd|'/c calc'!A0",
+      "a\u001b[31mred",
+      "../up",
+      "time",
+    ]) {
+      put(folder, "hostile.yaml", name(hostile));
+      const run = forebay(folder, "clean", "hostile.yaml");
+      expect(run.status, hostile).toBe(2);
+      expect(run.stderr.match(/^hostile\.yaml:\d+:\d+: /gm)?.length, hostile).toBe(1);
+      expect(run.stderr).not.toContain("\u001b");
+    }
+  });
+
   it("does not mind a closed pipe", () => {
     const run = forebay(folder, "schema");
     expect(run.status).toBe(0);
