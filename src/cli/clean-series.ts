@@ -10,7 +10,7 @@ import type { FileAccount, LogFile } from "../logs/rows.ts";
 import { PublishSet } from "../outputs/publish.ts";
 import { SeriesCsv } from "../outputs/series-csv.ts";
 import type { LoadedPipeline } from "../pipeline/load.ts";
-import { asDiagnostic } from "../pipeline/plan.ts";
+import { intervalProblems } from "../pipeline/plan.ts";
 import type { Plan } from "../pipeline/plan-types.ts";
 import { readRequest } from "../pipeline/read-request.ts";
 import { accountText, makeAccount } from "../report/account.ts";
@@ -83,10 +83,8 @@ function tooFewRows(task: SeriesTask, rows: number): Diagnostic {
 /** What the design could not know: how the grid sits with the log's own times. */
 function checkAgainstLog(task: SeriesTask, timing: Timing): Diagnostic[] {
   const { loaded, plan } = task;
-  const { design, place } = plan.gridStage;
-  const diagnostics = design
-    .checkInterval(timing.nominal_us / 1e6)
-    .map((p) => asDiagnostic(loaded, place - 1, p));
+  const { design } = plan.gridStage;
+  const diagnostics = intervalProblems(loaded, plan, timing.nominal_us / 1e6);
   const interval_us = intervalSeconds(design.grid) * 1e6;
   const blank = timing.gapTotal_us / interval_us;
   if (blank > BLANK_ALLOWED && blank > BLANK_PER_ROW * timing.rows) {

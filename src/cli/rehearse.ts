@@ -1,7 +1,7 @@
 /** `forebay rehearse`: checks a pipeline and designs every filter, without reading any data. */
 import { type Diagnostic, DiagnosticError, renderDiagnostic } from "../diagnostics.ts";
 import { loadPipeline } from "../pipeline/load.ts";
-import { asDiagnostic, planPipeline } from "../pipeline/plan.ts";
+import { intervalProblems, planPipeline } from "../pipeline/plan.ts";
 import { parseDuration } from "../pipeline/quantities.ts";
 import { accountText, designAccount } from "../report/account.ts";
 import type { StageAccount } from "../report/account-format.ts";
@@ -27,9 +27,8 @@ export function rehearse(path: string, options: RehearseOptions, streams: Stream
     checkClock(loaded);
     for (const d of warnings) streams.err(`${renderDiagnostic(d)}\n`);
     if (options.interval !== undefined) {
-      const problems = plan.gridStage.design.checkInterval(intervalOf(options.interval));
-      if (problems.length > 0)
-        throw new DiagnosticError(problems.map((p) => asDiagnostic(loaded, plan.gridStage.place - 1, p)));
+      const problems = intervalProblems(loaded, plan, intervalOf(options.interval));
+      if (problems.length > 0) throw new DiagnosticError(problems);
     }
     const design = designAccount(plan, loaded.pipeline);
     streams.out(
@@ -75,7 +74,7 @@ function designText(
       ...design.stages.map((s) => [
         `${s.place} ${s.stage}`,
         s.in.interval_s === null ? "rows" : timeText(s.in.interval_s, 3),
-        timeText(s.out.interval_s, 3),
+        s.out.interval_s === null ? "rows" : timeText(s.out.interval_s, 3),
         s.taps === null ? "–" : String(s.taps),
         timeText(s.delay.introduced_s, 3),
         timeText(s.delay.residual_s, 3),

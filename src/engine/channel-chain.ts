@@ -62,7 +62,7 @@ export class ChannelChain {
 
   constructor(options: ChainOptions) {
     const { plan, channel, scope } = options;
-    this.rows = plan.gridStage.design.rowKernel();
+    this.rows = plan.gridStage.design.rowKernel({ marked: plan.rowStages.length > 0 });
     const grid = plan.gridStage.design.grid;
     this.gridCounts = new StateCounts(indexRange(grid, scope));
     const stages = plan.stages.slice(0, options.depth ?? plan.stages.length);
@@ -196,8 +196,9 @@ export class ChannelChain {
     };
   }
 
-  push(times: Float64Array, column: Float64Array, count: number): void {
-    this.rows.push(times, column, count, this.entry.push);
+  /** @param marks  where row stages stand above */
+  push(times: Float64Array, column: Float64Array, count: number, marks?: Uint8Array): void {
+    this.rows.push(times, column, count, this.entry.push, marks);
   }
 
   flush(): void {

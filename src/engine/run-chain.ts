@@ -11,6 +11,7 @@ import { ChannelZip, type RowsOut } from "./channel-zip.ts";
 import type { StateCounts } from "./counts.ts";
 import { indexRange } from "./index-range.ts";
 import { RemovedSeries } from "./removed-series.ts";
+import { RowChain, type RowMeasure } from "./row-chain.ts";
 import type { Scope } from "./scope.ts";
 import { SpectrumPlans } from "./spectrum-plans.ts";
 import { Extremes } from "./sums.ts";
@@ -39,6 +40,7 @@ export interface RunOptions {
 
 /** What was measured of one channel. */
 export interface ChannelResult {
+  readonly rowMeasures: readonly RowMeasure[];
   readonly measures: readonly StageMeasure[];
   readonly whole: WholeMeasure | null;
   readonly gridCounts: StateCounts;
@@ -69,13 +71,24 @@ export function runChain(options: RunOptions): ChannelResult[] {
   let pass = 0;
   const drive = (chains: readonly (ChannelChain | null)[]) => {
     let seen = 0;
+    const rowChain =
+      plan.rowStages.length === 0
+        ? null
+        : new RowChain(plan.rowStages, plan.channels.length, (block) => {
+            for (const [c, chain] of chains.entries())
+              chain?.push(block.times, block.columns[c]!, block.count, block.marks[c]!);
+          });
     for (const block of rows.blocks()) {
-      for (const [c, chain] of chains.entries()) chain?.push(block.times, block.columns[c]!, block.count);
+      if (rowChain === null)
+        for (const [c, chain] of chains.entries()) chain?.push(block.times, block.columns[c]!, block.count);
+      else rowChain.push(block);
       seen += block.count;
       options.onProgress?.((pass + seen / rows.rows) / passes);
     }
+    rowChain?.flush();
     for (const chain of chains) chain?.flush();
     pass++;
+    return rowChain;
   };
 
   for (const depth of lessons) {
@@ -117,6 +130,7 @@ export function runChain(options: RunOptions): ChannelResult[] {
       ? null
       : new ChannelZip(plan.channels.length, gridRange, options.onRemoved);
   const results: ChannelResult[] = [];
+  let rowChain: RowChain | null = null;
   const chains = plan.channels.map((_, channel) => {
     const inputStrip = new TimeStrip(gridRange);
     const cleanStrip = new TimeStrip(outRange);
@@ -143,6 +157,9 @@ export function runChain(options: RunOptions): ChannelResult[] {
       ...(pair === null ? {} : { onBeforeDrop: pair.pushOutput }),
     });
     results.push({
+      get rowMeasures() {
+        return rowChain?.measures(channel) ?? [];
+      },
       measures: chain.measures,
       whole: chain.whole,
       gridCounts: chain.gridCounts,
@@ -156,7 +173,7 @@ export function runChain(options: RunOptions): ChannelResult[] {
     });
     return chain;
   });
-  drive(chains);
+  rowChain = drive(chains);
   clean.handOver();
   removed?.handOver();
   return results;

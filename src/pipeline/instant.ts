@@ -61,3 +61,11 @@ export function parseInstant(text: string): Instant | Refused {
   const seconds = midnight / 1000 + h * 3600 + mi * 60 + s - offset_s;
   return { us: seconds * 1e6 + Number(fraction.padEnd(6, "0")), text: clean };
 }
+
+/** The same the other way, to the microsecond where it needs to be. */
+export function isoInstant(us: number): string {
+  const second = Math.floor(us / 1e6);
+  const rest = us - second * 1e6;
+  const whole = new Date(second * 1000).toISOString().slice(0, 19);
+  return `${whole}${rest === 0 ? "" : `.${String(rest).padStart(6, "0").replace(/0+$/, "")}`}Z`;
+}

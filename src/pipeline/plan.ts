@@ -4,9 +4,19 @@
  */
 import { type Diagnostic, DiagnosticError } from "../diagnostics.ts";
 import { intervalSeconds } from "../signal/grid.ts";
-import type { GridDesign, Problem, ReportDesign, Signal, Stage, StageDesign } from "../stages/stage.ts";
+import type {
+  AnyDesign,
+  AnyStage,
+  GridDesign,
+  Problem,
+  ReportDesign,
+  RowStageDesign,
+  Signal,
+  StageDesign,
+} from "../stages/stage.ts";
 import type { LoadedPipeline } from "./load.ts";
-import type { Plan, PlannedStage } from "./plan-types.ts";
+import { conversionProblem, orderProblem } from "./plan-order.ts";
+import type { Plan, PlannedRowStage, PlannedStage } from "./plan-types.ts";
 
 export interface Planned {
   readonly plan: Plan;
@@ -14,6 +24,7 @@ export interface Planned {
 }
 
 const isGridDesign = (design: StageDesign): design is GridDesign => "rowKernel" in design;
+const isRowStageDesign = (design: AnyDesign): design is RowStageDesign => "rowStage" in design;
 const isReportDesign = (design: StageDesign): design is ReportDesign => "report" in design;
 
 /** Stages after which the rate is another. */
@@ -35,11 +46,20 @@ export function asDiagnostic(loaded: LoadedPipeline, index: number, p: Problem):
   };
 }
 
+/** Problems that only the interval of the log's own rows shows. */
+export function intervalProblems(loaded: LoadedPipeline, plan: Plan, nominal_s: number): Diagnostic[] {
+  return [...plan.rowStages, plan.gridStage].flatMap(({ design, place }) =>
+    (design.checkInterval?.(nominal_s) ?? []).map((p) => asDiagnostic(loaded, place - 1, p)),
+  );
+}
+
 /** @throws DiagnosticError with all problems of severity error */
-export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string, Stage>): Planned {
+export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string, AnyStage>): Planned {
   const { pipeline } = loaded;
   const diagnostics: Diagnostic[] = [];
   const planned: PlannedStage[] = [];
+  const rowStages: PlannedRowStage[] = [];
+  const above: string[] = [];
   const everywhere = pipeline.channels.map((_, c) => c);
   let report: ReportDesign["report"] | null = null;
   let reportAt = -1;
@@ -60,7 +80,8 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
       entry.channels === undefined
         ? everywhere
         : everywhere.filter((c) => entry.channels!.includes(pipeline.channels[c]!.name));
-    const order = orderProblem(stage.name, signal, reportAt >= 0);
+    const order = orderProblem(stage, signal, above) ?? (failed ? null : conversionProblem(stage, signal));
+    above.push(stage.name);
     if (order !== null) {
       say(order);
       failed = true;
@@ -76,6 +97,11 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
       failed = true;
       // The search for mistakes goes on as long as the rate is known.
       if (CHANGES_GRID.has(stage.name)) signal = null;
+      continue;
+    }
+    if (isRowStageDesign(design)) {
+      rowStages.push({ place: index + 1, stage: stage.name, signalIn: signal, design, selected });
+      signal = { ...signal, channels: design.channels };
       continue;
     }
     planned.push({
@@ -109,7 +135,11 @@ export function planPipeline(loaded: LoadedPipeline, stages: ReadonlyMap<string,
   const grid = marked.find((p) => isGridDesign(p.design)) as Plan["gridStage"];
   return {
     plan: {
-      channels: pipeline.channels,
+      channels: pipeline.channels.map((channel, c) => ({
+        ...channel,
+        unit: grid.signalIn.channels[c]!.unit,
+      })),
+      rowStages,
       gridStage: grid,
       stages: marked.filter((p) => p !== grid),
       report,
@@ -129,39 +159,4 @@ function after(signal: Signal, design: StageDesign, selected: readonly number[])
       design.taps !== null && selected.includes(c) ? [...list, { taps: design.taps, interval_s }] : list,
     ),
   };
-}
-
-/** What stands in the wrong place of the chain. */
-function orderProblem(stage: string, signal: Signal, reported: boolean): Problem | null {
-  if (stage === "resample" && signal.grid !== null)
-    return {
-      code: "second-grid",
-      severity: "error",
-      path: ["stage"],
-      problem: "the rows are on an even grid already",
-      given: "a second resample stage",
-      allowed: "one resample stage, before every stage that smooths",
-      todo: "take it out, or lower the rate with decimate",
-    };
-  if (stage === "report" && reported)
-    return {
-      code: "second-report",
-      severity: "error",
-      path: ["stage"],
-      problem: "a chain has one report stage",
-      given: "a second report stage",
-      allowed: "one, which accounts for every stage above it",
-      todo: "keep the last one",
-    };
-  if (stage !== "resample" && signal.grid === null)
-    return {
-      code: "before-grid",
-      severity: "error",
-      path: ["stage"],
-      problem: "this works on an even grid, and the rows are not on one yet",
-      given: `${stage} before resample`,
-      allowed: "resample first",
-      todo: "move resample above it",
-    };
-  return null;
 }

@@ -78,7 +78,7 @@ export interface StageAccount {
   settings: Record<string, unknown>;
   /** interval_s is null for rows before resampling; samples counts grid samples (or rows) per channel. */
   in: { interval_s: number | null; samples: number };
-  out: { interval_s: number; samples: number };
+  out: { interval_s: number | null; samples: number };
   /** Number of taps of the stage's own filter; null when it has none. */
   taps: number | null;
   coefficients: number[] | null;

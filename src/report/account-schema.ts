@@ -166,7 +166,7 @@ const stage = z.object({
   says: text,
   settings: z.record(text, z.unknown()),
   in: z.object({ interval_s: maybe, samples: whole }),
-  out: z.object({ interval_s: num, samples: whole }),
+  out: z.object({ interval_s: maybe, samples: whole }),
   taps: whole.nullable(),
   coefficients: numbers.nullable(),
   delay: z.object({ samples: num, introduced_s: num, compensated_s: num, residual_s: num }),

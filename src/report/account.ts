@@ -21,6 +21,7 @@ import type {
 import { CAUTIONS } from "./cautions.ts";
 import { counted, wholeAccount } from "./channel-account.ts";
 import { chainDelay, judgeRequirements } from "./requirements.ts";
+import { rowStageAccount, rowStageDesignAccount } from "./row-stage-account.ts";
 import { gridStageAccount, lookAhead, stageAccount, stageDesignAccount } from "./stage-account.ts";
 import { stripAccount } from "./strip-account.ts";
 import { verdictOf } from "./verdict.ts";
@@ -51,6 +52,7 @@ export interface AccountParts {
 export function makeAccount(parts: AccountParts): Account {
   const { plan, results, timing, pipeline } = parts;
   const stages = [
+    ...plan.rowStages.map((planned, i) => rowStageAccount(plan, planned, i, results, parts.rows)),
     gridStageAccount(plan, results, parts.rows, timing.nominal_us / 1e6),
     ...plan.stages.map((planned, i) => stageAccount(plan, planned, i, results)),
   ].sort((a, b) => a.place - b.place);
@@ -66,7 +68,7 @@ export function makeAccount(parts: AccountParts): Account {
       text: parts.pipelineText,
     },
     logger: parts.logger,
-    channels: pipeline.channels.map(({ name, unit, column }) => ({ name, unit, column })),
+    channels: plan.channels.map(({ name, unit, column }) => ({ name, unit, column })),
     scope: { from: scopeText(parts.scope.from_us), until: scopeText(parts.scope.until_us) },
     inputs: parts.inputs.map((file) =>
       inputAccount(
@@ -95,9 +97,10 @@ export function designAccount(
   chain: Omit<ChainAccount, "channels" | "first" | "last">;
   requirements: RequirementAccount[];
 } {
-  const stages = [plan.gridStage, ...plan.stages]
-    .map((s) => stageDesignAccount(plan, s))
-    .sort((a, b) => a.place - b.place);
+  const stages = [
+    ...plan.rowStages.map(rowStageDesignAccount),
+    ...[plan.gridStage, ...plan.stages].map((s) => stageDesignAccount(plan, s)),
+  ].sort((a, b) => a.place - b.place);
   return {
     stages,
     chain: chainDesign(plan),
@@ -173,11 +176,14 @@ function chainDesign(plan: Plan): Omit<ChainAccount, "channels" | "first" | "las
     delay_s: chainDelay(plan),
     introduced_s: most((s, step) => s.design.delay.samples * step),
     compensated_s: most((s) => s.design.delay.compensated_s),
-    look_ahead_s: all.some((s) => s.design.reach === null) ? null : most(lookAhead),
+    look_ahead_s: all.some((s) => s.design.reach === null) ? null : rowsAhead(plan) + most(lookAhead),
     end_s: most((s) => s.design.end_s),
     rise_s: chainRise(plan),
   };
 }
+
+/** How far ahead of a row its marks can depend on others, all row stages together, seconds. */
+const rowsAhead = (plan: Plan): number => plan.rowStages.reduce((sum, s) => sum + s.design.reach_s.after, 0);
 
 function chainAccount(parts: AccountParts): ChainAccount {
   const { plan, results } = parts;

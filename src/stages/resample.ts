@@ -110,7 +110,7 @@ function design(s: Settings, signal: Signal, selected: readonly number[]): Desig
       kernel: () => {
         throw new Error("resample works on rows");
       },
-      rowKernel: () => rowKernelFor(s.between, grid, longestGap_us),
+      rowKernel: ({ marked }) => rowKernelFor(s.between, grid, longestGap_us, marked),
       checkInterval: (nominal_s) => checkInterval(s, interval, longestGap_us / 1e6, nominal_s),
       interpolation: {
         between: s.between,

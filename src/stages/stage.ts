@@ -5,6 +5,7 @@
 import type { z } from "zod";
 import type { Grid } from "../signal/grid.ts";
 import type { GridBlock, Kernel } from "../signal/grid-block.ts";
+import type { MarkedRows } from "../signal/marked-rows.ts";
 import type { WindowKind } from "../signal/windows.ts";
 
 /** A filter at the rate of its grid, for combined responses. */
@@ -13,11 +14,21 @@ export interface FilterTaps {
   readonly interval_s: number;
 }
 
+export interface SignalChannel {
+  readonly name: string;
+  readonly unit: string;
+  /** Present while only these stretches of time are in another unit: microseconds, until is outside. */
+  readonly converting?: {
+    readonly unit: string;
+    readonly spans: readonly { readonly from_us: number; readonly until_us: number }[];
+  };
+}
+
 /** The signal between two stages, as far as the design knows it. */
 export interface Signal {
   /** null: rows with times of their own, before `resample`. */
   readonly grid: Grid | null;
-  readonly channels: readonly { readonly name: string; readonly unit: string }[];
+  readonly channels: readonly SignalChannel[];
   /** Per channel (same order): the filters that it has passed since the grid began. */
   readonly filters: readonly (readonly FilterTaps[])[];
   /** Interval of the chain's first grid, seconds; null before it. */
@@ -94,8 +105,17 @@ export interface Learner {
 
 /** Turns the rows of one channel into grid samples. */
 export interface RowKernel extends Omit<Kernel, "push"> {
-  /** times strictly increasing, integer microseconds; NaN values are absent. */
-  push(times: Float64Array, values: Float64Array, count: number, emit: (block: GridBlock) => void): void;
+  /**
+   * times strictly increasing, integer microseconds; NaN values are absent.
+   * @param marks  of the rows, where row stages stand above: NaN with SCREENED is a rejected value
+   */
+  push(
+    times: Float64Array,
+    values: Float64Array,
+    count: number,
+    emit: (block: GridBlock) => void,
+    marks?: Uint8Array,
+  ): void;
   /** What interpolation did, for the account. */
   effect(): Record<string, unknown>;
 }
@@ -107,7 +127,8 @@ export interface ReportDesign extends StageDesign {
 
 /** The design of the one stage that leads from rows to a grid. */
 export interface GridDesign extends StageDesign {
-  readonly rowKernel: () => RowKernel;
+  /** @param marked  rows come with marks */
+  readonly rowKernel: (options: { readonly marked: boolean }) => RowKernel;
   /** Problems that only the log's own interval shows. */
   readonly checkInterval: (nominal_s: number) => Problem[];
   /** The effect of interpolation on the spectrum: mean |H|^2 at f, from what `effect` counted. */
@@ -122,24 +143,75 @@ export interface GridDesign extends StageDesign {
   };
 }
 
-export interface DesignOutcome<D extends StageDesign = StageDesign> {
+/** A value that a row stage kept out or called suspect; the raw value is kept in the account. */
+export interface RowFinding {
+  readonly time_us: number;
+  readonly value: number;
+  readonly reason: string;
+}
+
+/** What a row stage did to one channel. */
+export interface RowEffect {
+  /** Values kept out, and values called suspect, by reason. */
+  readonly rejected: Readonly<Record<string, number>>;
+  readonly suspect: Readonly<Record<string, number>>;
+  /** The first of each, in order of time. */
+  readonly firstRejected: readonly RowFinding[];
+  readonly firstSuspect: readonly RowFinding[];
+  /** Facts that only this stage has. */
+  readonly notes: Readonly<Record<string, unknown>>;
+}
+
+/**
+ * Works on rows with times of their own: all channels of a series together. It may change values and add marks,
+ * but emits the same rows in the same order, if later; it must not write into the arrays that it is given.
+ */
+export interface RowStageKernel {
+  push(block: MarkedRows, emit: (block: MarkedRows) => void): void;
+  flush(emit: (block: MarkedRows) => void): void;
+  /** Complete after flush. */
+  effect(channel: number): RowEffect;
+}
+
+/** The design of a stage that works on rows, before resample. */
+export interface RowStageDesign {
+  /** One plain sentence: what the stage does to the data. */
+  readonly says: string;
+  readonly settings: Record<string, unknown>;
+  /** The channels as they leave: calibration changes units. */
+  readonly channels: readonly SignalChannel[];
+  /** What is done to a row can depend on rows this far away, seconds; null: on all rows before. */
+  readonly reach_s: { readonly before: number | null; readonly after: number };
+  readonly notes: Record<string, unknown>;
+  /** Problems that only the log's own interval shows. */
+  readonly checkInterval?: (nominal_s: number) => Problem[];
+  readonly rowStage: () => RowStageKernel;
+}
+
+export type AnyDesign = StageDesign | RowStageDesign;
+
+export interface DesignOutcome<D extends AnyDesign = StageDesign> {
   /** null when a problem of severity error stands in the way. */
   readonly design: D | null;
   readonly problems: readonly Problem[];
 }
 
-export interface Stage<S extends z.ZodType = z.ZodType> {
+export interface Stage<S extends z.ZodType = z.ZodType, D extends AnyDesign = StageDesign> {
   readonly name: string;
   /** One sentence for `forebay stages`. */
   readonly about: string;
   readonly settings: S;
+  /** What it works on: samples on an even grid when left out. */
+  readonly worksOn?: "rows";
   /**
    * @param settings  parsed by the schema
    * @param signal    the stage's input
    * @param selected  indices of the channels that the stage works on
    */
-  readonly design: (settings: z.output<S>, signal: Signal, selected: readonly number[]) => DesignOutcome;
+  readonly design: (settings: z.output<S>, signal: Signal, selected: readonly number[]) => DesignOutcome<D>;
 }
+
+export type AnyStage = Stage<z.ZodType, AnyDesign>;
 
 /** Settings that the report stage hands to the account. */
 export interface ReportSettings {

@@ -4,6 +4,7 @@ import { describe, expect, it } from "vitest";
 import { makeGrid } from "../../src/signal/grid.ts";
 import { STAGES } from "../../src/stages/registry.ts";
 import type { FilterTaps, GridDesign, Problem, Signal } from "../../src/stages/stage.ts";
+import { ROW_MISTAKES } from "./parts/row-mistakes.ts";
 
 interface Mistake {
   readonly stage: string;
@@ -19,6 +20,10 @@ interface Mistake {
   readonly above?: readonly (readonly number[])[];
   /** Interval of the grid, microseconds; 1 s when left out. */
   readonly interval_us?: number;
+  /** Units of the channels a, b …, all of them selected. */
+  readonly units?: readonly string[];
+  /** Row stages: the channel is in this unit before 1971 already. */
+  readonly converting?: string;
   /** Seen only with the log's own interval at hand, seconds. */
   readonly log_s?: number;
 }
@@ -195,23 +200,42 @@ const MISTAKES: readonly Mistake[] = [
     code: "empty-band",
     path: ["bands", "slosh"],
   },
+
+  ...ROW_MISTAKES,
 ];
 
 function problemsOf(m: Mistake): readonly Problem[] {
   const stage = STAGES.get(m.stage)!;
-  const channels = m.some === true ? ["a", "b"] : ["a"];
+  const units = m.units ?? (m.some === true ? ["m", "m"] : ["m"]);
+  const channels = units.map((_, c) => "ab"[c]!);
+  const rows = m.stage === "resample" || stage.worksOn === "rows";
   const interval_s = (m.interval_us ?? 1e6) / 1e6;
   const filters = channels.map((_, c): FilterTaps[] => {
     const taps = m.above?.[c];
     return taps === undefined ? [] : [{ taps: Float64Array.from(taps), interval_s }];
   });
   const signal: Signal = {
-    grid: m.stage === "resample" ? null : makeGrid(2 * (m.interval_us ?? 1e6), 2),
-    channels: channels.map((name) => ({ name, unit: "m" })),
+    grid: rows ? null : makeGrid(2 * (m.interval_us ?? 1e6), 2),
+    channels: channels.map((name, c) => ({
+      name,
+      unit: units[c]!,
+      ...(m.converting === undefined
+        ? {}
+        : {
+            converting: {
+              unit: m.converting,
+              spans: [{ from_us: Number.NEGATIVE_INFINITY, until_us: 31_536_000e6 }],
+            },
+          }),
+    })),
     filters,
-    finest_s: m.stage === "resample" ? null : interval_s,
+    finest_s: rows ? null : interval_s,
   };
-  const { design, problems } = stage.design(stage.settings.parse(m.settings) as never, signal, [0]);
+  const { design, problems } = stage.design(
+    stage.settings.parse(m.settings) as never,
+    signal,
+    m.some === true ? [0] : [...channels.keys()],
+  );
   if (m.log_s === undefined) {
     expect(design === null).toBe(problems.some((p) => p.severity === "error"));
     return problems;

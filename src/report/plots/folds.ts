@@ -9,7 +9,7 @@ const MOST = 80;
 /** Where each frequency lands when samples are dropped: a zigzag; the band kept, mains and tones marked on it. */
 export function foldPlot(id: string, stage: StageAccount, title: string): string {
   const { alias } = stage;
-  if (alias === null || stage.in.interval_s === null) return "";
+  if (alias === null || stage.in.interval_s === null || stage.out.interval_s === null) return "";
   const before = 0.5 / stage.in.interval_s;
   const after = 0.5 / stage.out.interval_s;
   const legs = Math.min(MOST, Math.ceil(before / after));

@@ -1,6 +1,7 @@
 /** The ways to put rows onto a grid: who does it, and what it does to the spectrum. */
 
 import type { Grid } from "../../signal/grid.ts";
+import type { GridBlock } from "../../signal/grid-block.ts";
 import { type Guess, LeaveOneOut } from "../../signal/leave-one-out.ts";
 import { type Curve, type CurveEffect, RowCurves, SINC } from "../../signal/row-curves.ts";
 import {
@@ -9,6 +10,7 @@ import {
   meanPowerGain,
   RowInterpolator,
 } from "../../signal/row-interpolation.ts";
+import { RowMarks } from "../../signal/row-marks.ts";
 import { localCubicWeights, meanPowerGainOver, sincWeights } from "../../signal/row-response.ts";
 import type { RowKernel } from "../stage.ts";
 
@@ -42,7 +44,13 @@ export function rowsBeyond(method: RowMethod): number {
   return method === "monotone-cubic" || method === "local-cubic" ? 1 : 0;
 }
 
-export function rowKernelFor(method: RowMethod, grid: Grid, longestGap_us: number): RowKernel {
+/** @param marked  rows come with marks, which go on to the samples made of them */
+export function rowKernelFor(
+  method: RowMethod,
+  grid: Grid,
+  longestGap_us: number,
+  marked: boolean,
+): RowKernel {
   const rows = isCurve(method)
     ? new RowCurves(grid, method, longestGap_us)
     : new RowInterpolator(grid, method as Between, longestGap_us);
@@ -50,16 +58,39 @@ export function rowKernelFor(method: RowMethod, grid: Grid, longestGap_us: numbe
     method === "band-limited" || method === "cell-mean"
       ? null
       : new LeaveOneOut(method as Guess, longestGap_us);
+  const effect = () => ({
+    ...rows.effect(),
+    ...(check === null ? {} : { left_out_rows: check.count, left_out_rms: check.rms() }),
+  });
+  if (!marked)
+    return {
+      push(times, values, count, emit) {
+        check?.push(times, values, count);
+        rows.push(times, values, count, emit);
+      },
+      flush: (emit) => rows.flush(emit),
+      effect,
+    };
+  const marks = new RowMarks(grid, {
+    longestGap_us,
+    nearest: method === "nearest-sample",
+    beyond: rowsBeyond(method),
+    cell: method === "cell-mean",
+  });
+  const take = (block: GridBlock) => marks.take(block);
   return {
-    push(times, values, count, emit) {
+    push(times, values, count, emit, rowMarks) {
+      if (rowMarks === undefined) throw new Error("these rows come with marks");
       check?.push(times, values, count);
-      rows.push(times, values, count, emit);
+      marks.see(times, values, rowMarks, count);
+      rows.push(times, values, count, take);
+      marks.handOn(false, emit);
     },
-    flush: (emit) => rows.flush(emit),
-    effect: () => ({
-      ...rows.effect(),
-      ...(check === null ? {} : { left_out_rows: check.count, left_out_rms: check.rms() }),
-    }),
+    flush(emit) {
+      rows.flush(take);
+      marks.handOn(true, emit);
+    },
+    effect,
   };
 }
 
