@@ -1,5 +1,6 @@
 /** What `clean` says of a series when it is done. */
 import type { Account } from "../report/account-format.ts";
+import { rowNotes } from "../report/page-rows.ts";
 import { figure, frequencyText, grouped, timeText, wrap } from "./text.ts";
 
 const LABEL = 10;
@@ -26,6 +27,21 @@ export function seriesSummary(account: Account, title: string, folder: string): 
   );
   for (const [name, channel] of Object.entries(chain.channels))
     say("", `${name}: ${statesText(channel.counts)}`);
+  for (const stage of account.stages)
+    for (const [name, n] of rowNotes(stage)) {
+      const found = [
+        ...Object.entries(n.rejected).map(
+          ([reason, k]) => [k, `${grouped(k)} rejected (${reason})`] as const,
+        ),
+        ...Object.entries(n.suspect).map(([reason, k]) => [k, `${grouped(k)} suspect (${reason})`] as const),
+      ].filter(([k]) => k > 0);
+      const changed = n.rows_changed === undefined ? [] : [`${grouped(n.rows_changed)} rows changed`];
+      const texts = [...changed, ...found.map(([, text]) => text)];
+      say(
+        "rows",
+        `${stage.place} ${stage.stage}, ${name}: ${texts.length === 0 ? "nothing rejected" : texts.join(", ")}`,
+      );
+    }
   for (const stage of account.stages)
     for (const [name, c] of Object.entries(stage.channels)) {
       if (!c.accounted || stage.stage === "report") continue;

@@ -1,6 +1,7 @@
 /** One stage of the report: its sentence, its pictures, its figures. */
 import type { ChannelAccount, StageAccount } from "./account-format.ts";
 import { anchor, escaped, htmlTable } from "./html.ts";
+import { rowFindings } from "./page-rows.ts";
 import { foldPlot } from "./plots/folds.ts";
 import { psdPlot } from "./plots/psd.ts";
 import { removalPlot } from "./plots/removal.ts";
@@ -24,6 +25,7 @@ import {
 export function stageSection(s: StageAccount): string {
   return [
     `<p>${escaped(s.says)}</p>`,
+    rowFindings(s),
     figures(s),
     alias(s),
     responsePlot(anchor("response", s.place), s, `Stage ${s.place}, ${s.stage}: gain against frequency`),
