@@ -30,7 +30,8 @@ export interface SeriesTask {
   readonly version: string;
   /** Rows in a block; results do not depend on it. */
   readonly blockRows?: number;
-  readonly onProgress?: (step: "reading" | "cleaning", share: number) => void;
+  /** share of the step done, 0 to 1 (0 while it is not known), and rows read so far. */
+  readonly onProgress?: (step: "reading" | "cleaning", share: number, rows: number) => void;
 }
 
 export interface SeriesOutcome {
@@ -50,7 +51,7 @@ export async function cleanSeries(task: SeriesTask): Promise<SeriesOutcome> {
     const reading = readLogs(readRequest(loaded.pipeline, task.files));
     for await (const block of reading.blocks) {
       spool.append(block);
-      task.onProgress?.("reading", 0);
+      task.onProgress?.("reading", 0, spool.rows);
     }
     const read = reading.diagnostics();
     const failed = read.filter((d) => d.severity === "error");
@@ -128,7 +129,7 @@ function publish(task: SeriesTask, spool: RowSpool, timing: Timing, inputs: read
         ...(removed === null
           ? {}
           : { onRemoved: (first, count, values, marks) => removed.write(first, count, values, marks) }),
-        onProgress: (share) => task.onProgress?.("cleaning", share),
+        onProgress: (share) => task.onProgress?.("cleaning", share, spool.rows),
       });
       return { results, clean, cleanFile, removed, removedFile };
     };

@@ -16,7 +16,7 @@ import { DONE, NOT_MET, PART_DONE, WRONG } from "./exit-codes.ts";
 import { openJournal } from "./journal.ts";
 import { shownPath } from "./shown-path.ts";
 import { seriesSummary } from "./summary.ts";
-import { wrap } from "./text.ts";
+import { grouped, wrap } from "./text.ts";
 import { VERSION } from "./version.ts";
 
 export interface CleanOptions {
@@ -117,7 +117,7 @@ export async function clean(path: string, options: CleanOptions, streams: Stream
         name,
         scope,
         version: VERSION,
-        onProgress: (step, share) => journal.progress(title, step, share),
+        onProgress: (step, share, rows) => journal.progress(title, `${step} ${grouped(rows)} rows`, share),
       });
       journal.settle();
       complain(outcome.diagnostics);
