@@ -3,7 +3,6 @@ import { describe, expect, it } from "vitest";
 import { stageDesignAccount } from "../../src/report/stage-account.ts";
 import { intervalSeconds } from "../../src/signal/grid.ts";
 import { FILLED, MISSING, STATES } from "../../src/signal/marks.ts";
-import { gainAt, responseAt } from "../../src/signal/response.ts";
 import { STAGES } from "../../src/stages/registry.ts";
 import { planOf, run } from "../engine/harness.ts";
 import {
@@ -16,8 +15,8 @@ import {
   throughKernel,
 } from "./parts/at-work.ts";
 import { CASES, type StageCase } from "./parts/cases.ts";
-import { complexGain } from "./parts/complex-gain.ts";
 import { gridEntry, RATES, type Rate } from "./parts/rates.ts";
+import { expectStatedResponse } from "./parts/stated-response.ts";
 
 /** Before 1970, and not a multiple of any factor: records of these tests cross the epoch. */
 const FIRST = -403;
@@ -148,61 +147,10 @@ describe("an impulse lands where the design says", () => {
   });
 });
 
-const wave = (f: number, phase: number, n: number) =>
-  Float64Array.from({ length: n }, (_, i) => Math.cos(2 * Math.PI * ((f * (FIRST + i)) % 1) + phase));
-
 describe("a sine wave comes out as the stated response says", () => {
   filtering((c, rate) => {
     const { plan, planned } = atWork(c, rate);
-    const { taps, delay, end_s } = planned.design;
-    const interval = intervalSeconds(planned.signalIn.grid!);
-    const full = Math.ceil(end_s / interval + 1);
-    const measured = (f: number) => {
-      const { first, y } = throughKernel(planned, FIRST, wave(f, 0.7, 900));
-      return complexGain(first + full, y.subarray(full, y.length - full), f, 0.7);
-    };
-    const scale = taps!.reduce((sum, w) => sum + Math.abs(w), 0);
-    for (const f of [0.0113, 0.05, 0.1237, 0.1871, 0.2503, 0.3331, 0.4127, 0.4891]) {
-      const { re, im } = measured(f);
-      const stated = responseAt(taps!, f);
-      // The window reaches `indexSamples` past the output's index.
-      const turn = 2 * Math.PI * f * delay.indexSamples;
-      const wanted = {
-        re: stated.re * Math.cos(turn) - stated.im * Math.sin(turn),
-        im: stated.re * Math.sin(turn) + stated.im * Math.cos(turn),
-      };
-      expect(Math.hypot(re - wanted.re, im - wanted.im)).toBeLessThan(1e-9 * scale);
-    }
-    if (taps!.length < 2) return;
-    const account = stageDesignAccount(plan, planned);
-    account.response!.frequency_Hz.forEach((hz, i) => {
-      if (i % 57 !== 3) return;
-      const { re, im } = measured(hz * interval);
-      expect(Math.abs(10 ** (account.response!.gain_dB[i]! / 20) - Math.hypot(re, im))).toBeLessThan(
-        1e-9 * scale,
-      );
-    });
-    const gain = account.gain!;
-    const peak = Math.max(...Array.from({ length: 4001 }, (_, i) => gainAt(taps!, i / 8000)));
-    for (const [dB, edges] of [
-      [1, gain.f_1dB_Hz],
-      [3, gain.f_3dB_Hz],
-      [6, gain.f_6dB_Hz],
-    ] as const)
-      for (const hz of edges === null ? [] : [edges].flat()) {
-        const { re, im } = measured(hz * interval);
-        // The largest gain is known from a grid here, so to some 1e-5.
-        expect(Math.abs(Math.hypot(re, im) / peak - 10 ** (-dB / 20))).toBeLessThan(2e-5);
-      }
-    const flat = throughKernel(planned, FIRST, new Float64Array(900).fill(1)).y;
-    expect(Math.abs(flat[450]! - gain.dc)).toBeLessThan(1e-12 * scale);
-    const h = throughKernel(
-      planned,
-      FIRST,
-      Float64Array.from({ length: 900 }, (_, i) => +(i === 450)),
-    ).y;
-    const power = h.reduce((sum, v) => sum + (Number.isNaN(v) ? 0 : v * v), 0);
-    expect(account.enbw_Hz! * interval * 2 * peak * peak).toBeCloseTo(power, 4);
+    expectStatedResponse(plan, planned, FIRST);
   });
 });
 
@@ -211,7 +159,7 @@ describe("stages without a filter hand the samples on as they are", () => {
     const { planned } = atWork(c, rate);
     const { taps, learn, keepEvery } = planned.design;
     if (taps !== null || learn !== undefined || c.stage === "resample") return;
-    const x = wave(0.123, 0, 300);
+    const x = Float64Array.from({ length: 300 }, (_, i) => Math.cos(0.77 * i));
     expect(throughKernel(planned, FIRST, x)).toEqual({ first: FIRST, y: x });
     const kept = throughKernel(planned, FIRST, x, false);
     expect(kept.y).toEqual(x.filter((_, i) => (FIRST + i) % keepEvery === 0));

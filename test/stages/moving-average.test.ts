@@ -3,7 +3,7 @@ import { stageDesignAccount } from "../../src/report/stage-account.ts";
 import { intervalSeconds, timeOf } from "../../src/signal/grid.ts";
 import { amplitudeAt } from "../../src/signal/linear-phase.ts";
 import { END, FILLED, MISSING, stateOf, THIN } from "../../src/signal/marks.ts";
-import { type Entry, planOf } from "../engine/harness.ts";
+import { type Entry, evenRows, planOf, run } from "../engine/harness.ts";
 import averages from "../reference/08-published-weighted-averages.json" with { type: "json" };
 import responses from "../reference/10-moving-average-response.json" with { type: "json" };
 import edges from "../reference/11-centred-filtering-edges.json" with { type: "json" };
@@ -210,6 +210,23 @@ describe("moving average", () => {
       [5, 0],
     ]);
     expect(intervalSeconds(twice.plan.outGrid)).toBe(1);
+    // What was removed stands beside its input again: kept + removed = input at equal times.
+    const x = Array.from({ length: 40 }, (_, i) => Math.sin(i / 3) + (i % 5));
+    const {
+      clean: kept,
+      first,
+      removed,
+      removedFirst,
+    } = run(twice.plan, evenRows(x, 1e6), { removed: true });
+    const timeAt = (i: number) => timeOf(twice.plan.outGrid, first + i) / 1e6;
+    let compared = 0;
+    kept[0]!.forEach((y, i) => {
+      const r = removed[0]![timeAt(i) - removedFirst];
+      if (Number.isNaN(y) || r === undefined || Number.isNaN(r)) return;
+      expect(Math.abs(y + r - x[timeAt(i)]!)).toBeLessThan(1e-14);
+      compared++;
+    });
+    expect(compared).toBe(38);
   });
 
   it("takes weights in order of time: the last one meets the newest sample", () => {
