@@ -66,10 +66,10 @@ class IsoReader {
   private date(): number {
     const year = this.digits(4);
     if (year < 0) return Number.NaN;
-    const extended = this.skip(MINUS);
-    if (this.skip(87)) {
+    const extended = this.accept(MINUS);
+    if (this.accept(87)) {
       const week = this.digits(2);
-      if (extended && !this.skip(MINUS)) return Number.NaN;
+      if (extended && !this.accept(MINUS)) return Number.NaN;
       const weekday = this.digits(1);
       return weekDate(year, week, weekday);
     }
@@ -85,7 +85,7 @@ class IsoReader {
     }
     if (extended ? run !== 2 : run !== 4) return Number.NaN;
     const month = this.digits(2);
-    if (extended && !this.skip(MINUS)) return Number.NaN;
+    if (extended && !this.accept(MINUS)) return Number.NaN;
     const day = this.digits(2);
     if (month < 1 || month > 12 || day < 1 || day > daysInMonth(year, month)) return Number.NaN;
     return daysFromCivil(year, month, day);
@@ -93,15 +93,15 @@ class IsoReader {
 
   private clock(into: TimeCell): boolean {
     const hour = this.digits(2);
-    const extended = this.skip(58);
+    const extended = this.accept(58);
     const minute = this.digits(2);
     if (hour < 0 || hour > 24 || minute < 0 || minute > 59) return false;
     let second = 0;
     let micros = 0;
-    if (extended ? this.skip(58) : isDigit(this.text.charCodeAt(this.at))) {
+    if (extended ? this.accept(58) : isDigit(this.text.charCodeAt(this.at))) {
       second = this.digits(2);
       if (second < 0 || second > 60) return false;
-      if (this.skip(46) || this.skip(44)) {
+      if (this.accept(46) || this.accept(44)) {
         micros = this.fraction(into);
         if (micros < 0) return false;
       }
@@ -139,16 +139,16 @@ class IsoReader {
   private offset(into: TimeCell): boolean {
     if (this.at === this.text.length) return true;
     if (this.text[this.at] === " ") this.at++;
-    if (this.skip(90) || this.skip(122)) {
+    if (this.accept(90) || this.accept(122)) {
       into.offset_us = 0;
       return true;
     }
-    const negative = this.skip(MINUS);
-    if (!negative && !this.skip(43)) return false;
+    const negative = this.accept(MINUS);
+    if (!negative && !this.accept(43)) return false;
     const hours = this.digits(2);
     if (hours < 0 || hours > 23) return false;
     let minutes = 0;
-    const colon = this.skip(58);
+    const colon = this.accept(58);
     if (colon || this.at < this.text.length) minutes = this.digits(2);
     if (minutes < 0 || minutes > 59) return false;
     const offset = (hours * 60 + minutes) * 60e6;
@@ -168,7 +168,7 @@ class IsoReader {
     return value;
   }
 
-  private skip(code: number): boolean {
+  private accept(code: number): boolean {
     if (this.text.charCodeAt(this.at) !== code) return false;
     this.at++;
     return true;
