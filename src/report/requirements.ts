@@ -1,41 +1,16 @@
 /** Requirements of the pipeline, judged on the design and, where a report stage measured it, on the data. */
 import type { ChannelResult } from "../engine/run-chain.ts";
-import type { Plan, PlannedStage } from "../pipeline/plan-types.ts";
+import type { Plan } from "../pipeline/plan-types.ts";
 import type { Requirements } from "../pipeline/schema.ts";
-import { meanGain } from "../signal/filter-figures.ts";
 import { intervalSeconds } from "../signal/grid.ts";
-import { gainAt } from "../signal/response.ts";
 import { bandPower } from "../signal/welch.ts";
 import { inHertz } from "../stages/parts/frequencies.ts";
 import type { RequirementAccount } from "./account-format.ts";
+import { chainExtremes } from "./chain-response.ts";
 import { densities } from "./spectrum-account.ts";
 
-/** Frequencies at which the chain's response is looked at, per band. */
-const POINTS = 512;
 /** What leakage and the ends of segments may add to a measured band gain, dB. */
 const MEASURED_ALLOWANCE_dB = 0.5;
-
-/**
- * Gain of the whole chain at f, for one channel: the product over the stages whose input still holds f.
- * Above the rate's half, what folds has been through the filters before the fold.
- */
-export function chainGain(plan: Plan, channel: number, f_Hz: number): number {
-  let gain = 1;
-  for (const planned of plan.stages) {
-    const interval = intervalSeconds(planned.signalIn.grid!);
-    if (!planned.selected.includes(channel) || f_Hz * interval > 0.5) continue;
-    gain *= stageGain(planned, f_Hz * interval);
-  }
-  return gain;
-}
-
-/** |H| of one stage at f cycles/sample. */
-export function stageGain(planned: PlannedStage, f: number): number {
-  const { taps } = planned.design;
-  if (taps === null) return 1;
-  const equal = taps.length > 2 && taps.every((w) => w === taps[0]);
-  return equal ? Math.abs(meanGain(taps.length, f)) : gainAt(taps, f);
-}
 
 export function judgeRequirements(
   plan: Plan,
@@ -49,8 +24,8 @@ export function judgeRequirements(
     for (const keep of requirements.keep ?? []) {
       const from = inHertz(keep.from, first);
       const to = inHertz(keep.to, first);
-      const gains = range(from, to).map((f) => dB(chainGain(plan, c, f)));
-      const worst = Math.max(...gains.map(Math.abs));
+      const { highest, lowest } = chainExtremes(plan, c, from, Math.max(from, Math.min(to, 0.5 / first)));
+      const worst = Math.max(Math.abs(dB(highest)), Math.abs(dB(lowest)));
       const fits = to <= 0.5 / last;
       const measured = results === null ? null : measuredGain(plan, c, results[c]!, from, to);
       const off = measured === null ? null : Math.abs(measured);
@@ -71,7 +46,7 @@ export function judgeRequirements(
       const from = inHertz(remove.from, first);
       const to = inHertz(remove.to, first);
       const seen = Math.min(to, 0.5 / first);
-      const worst = seen > from ? Math.max(...range(from, seen).map((f) => dB(chainGain(plan, c, f)))) : null;
+      const worst = seen > from ? dB(chainExtremes(plan, c, from, seen).highest) : null;
       const measured =
         results === null || worst === null ? null : measuredGain(plan, c, results[c]!, from, seen);
       const met =
@@ -151,10 +126,6 @@ function measuredGain(
     any = true;
   }
   return any ? gain_dB : null;
-}
-
-function range(from: number, to: number): number[] {
-  return Array.from({ length: POINTS + 1 }, (_, i) => from + ((to - from) * i) / POINTS);
 }
 
 const dB = (gain: number): number => (gain > 1e-20 ? 20 * Math.log10(gain) : -400);

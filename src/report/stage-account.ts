@@ -8,8 +8,8 @@ import { foldedFrequency } from "../signal/fold.ts";
 import { intervalSeconds } from "../signal/grid.ts";
 import type { AliasAccount, ChannelAccount, StageAccount } from "./account-format.ts";
 import { turnedPower_pct } from "./adviser.ts";
+import { stageGain } from "./chain-response.ts";
 import { channelAccount, counted, unmeasured } from "./channel-account.ts";
-import { stageGain } from "./requirements.ts";
 import { decibels, densities } from "./spectrum-account.ts";
 
 const RESPONSE_POINTS = 400;
