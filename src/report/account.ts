@@ -218,13 +218,23 @@ function chainAccount(parts: AccountParts): ChainAccount {
   };
 }
 
-/** Rise time of all filters together, on the first grid; null when a constant does not pass or the whole is too long. */
+/** The longest rise time over the channels; null when it is not known for one that passes a filter. */
 function chainRise(plan: Plan): number | null {
+  const filtered = plan.channels
+    .map((_, c) => c)
+    .filter((c) => plan.stages.some((s) => s.design.taps !== null && s.selected.includes(c)));
+  const ways = new Map(filtered.map((c) => [plan.stages.map((s) => s.selected.includes(c)).join(), c]));
+  const rises = [...ways.values()].map((c) => channelRise(plan, c));
+  return rises.length === 0 || rises.includes(null) ? null : Math.max(...(rises as number[]));
+}
+
+/** Rise time of all filters together, on the first grid; null when a constant does not pass or the whole is too long. */
+function channelRise(plan: Plan, channel: number): number | null {
   const interval = intervalSeconds(plan.gridStage.design.grid);
   let taps: Float64Array = Float64Array.of(1);
   let factor = 1;
   for (const { design, selected } of plan.stages) {
-    if (design.taps !== null && selected.includes(0)) {
+    if (design.taps !== null && selected.includes(channel)) {
       const spread = new Float64Array((design.taps.length - 1) * factor + 1);
       design.taps.forEach((w, i) => {
         spread[i * factor] = w;
@@ -244,10 +254,13 @@ export function accountText(account: unknown): string {
   return `${inlineNumbers(JSON.stringify(account, null, 2))}\n`;
 }
 
-/** Arrays that hold only numbers and nulls are easier to read, and much shorter, on one line. */
+/**
+ * Arrays that hold only numbers and nulls are easier to read, and much shorter, on one line. Line breaks stand
+ * only between values: inside a text they are escaped, so that a pipeline's text stays as it is.
+ */
 export function inlineNumbers(json: string): string {
   return json.replace(
-    /\[\s+((?:-?[\d.eE+-]+|null)(?:,\s+(?:-?[\d.eE+-]+|null))*)\s+\]/g,
+    /\[\n *((?:-?[\d.eE+-]+|null)(?:,\n *(?:-?[\d.eE+-]+|null))*)\n *\]/g,
     (_, list: string) => `[${list.replace(/\s+/g, " ")}]`,
   );
 }

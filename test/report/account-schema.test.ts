@@ -1,6 +1,7 @@
 import { join } from "node:path";
 import { Ajv2020 } from "ajv/dist/2020.js";
 import { describe, expect, it } from "vitest";
+import { accountText } from "../../src/report/account.ts";
 import { forebay, place, put, ROOT, text } from "../cli/harness.ts";
 
 const folder = place();
@@ -27,5 +28,14 @@ describe("schema of the account", () => {
       delete account.stages[0].delay;
       expect(validate(account)).toBe(false);
     }
+  });
+});
+
+describe("text of the account", () => {
+  it("keeps a pipeline's text as it is, lists with blanks inside included", () => {
+    const pipelineText = "chain: [ 1, 2, 3 ]\nweights: [\n  1,\n  2\n]\n";
+    const text = accountText({ text: pipelineText, list: [1, 2.5, null, -3e-7] });
+    expect(JSON.parse(text)).toEqual({ text: pipelineText, list: [1, 2.5, null, -3e-7] });
+    expect(text).toContain("[1, 2.5, null, -3e-7]");
   });
 });
