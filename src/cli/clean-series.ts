@@ -7,6 +7,7 @@ import { measureTiming, type Timing } from "../engine/timing.ts";
 import { readLogs } from "../logs/read-logs.ts";
 import { RowSpool } from "../logs/row-spool.ts";
 import type { FileAccount, LogFile } from "../logs/rows.ts";
+import { isoTime } from "../outputs/cell-text.ts";
 import { PublishSet } from "../outputs/publish.ts";
 import { SeriesCsv } from "../outputs/series-csv.ts";
 import type { LoadedPipeline } from "../pipeline/load.ts";
@@ -87,6 +88,19 @@ function checkAgainstLog(task: SeriesTask, timing: Timing): Diagnostic[] {
   const { design } = plan.gridStage;
   const diagnostics = intervalProblems(loaded, plan, timing.nominal_us / 1e6);
   const interval_us = intervalSeconds(design.grid) * 1e6;
+  const { scope } = task;
+  if (scope.from_us > timing.last_us || scope.until_us <= timing.first_us)
+    diagnostics.push({
+      code: "nothing-in-scope",
+      severity: "error",
+      file: task.files[0]!.name,
+      line: 0,
+      column: 0,
+      problem: "no row lies in the time asked for with --from and --until",
+      given: `rows from ${isoTime(timing.first_us)} to ${isoTime(timing.last_us)}`,
+      allowed: "a time in which the log has rows",
+      todo: "correct --from or --until, or name other logs with --logs",
+    });
   const blank = timing.gapTotal_us / interval_us;
   if (blank > BLANK_ALLOWED && blank > BLANK_PER_ROW * timing.rows) {
     const longest = timing.gaps.reduce((a, b) => (b.to_us - b.from_us > a.to_us - a.from_us ? b : a));

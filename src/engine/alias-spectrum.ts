@@ -16,7 +16,9 @@ export interface AliasMeasure {
   readonly landsAt_Hz: number;
 }
 
-const BANDS = 16;
+const MOST_BANDS = 16;
+/** Bins that a band needs at least: a band narrower than a bin may hold what folds and not what belongs there. */
+const BINS_A_BAND = 4;
 /**
  * A band that holds next to nothing is judged against this share of the whole band kept: what folds there
  * 60 dB below nothing is still nothing.
@@ -50,7 +52,7 @@ export class AliasSpectrum {
     this.node.push(block);
   }
 
-  /** null when the record has no gap-free segment, or nothing at all to measure. */
+  /** null when the record has no gap-free segment, one too short to resolve the band kept, or nothing to measure. */
   measure(): AliasMeasure | null {
     const { plan } = this.node;
     const alias = this.planned.design.alias;
@@ -59,18 +61,22 @@ export class AliasSpectrum {
     const newRate = rate / this.planned.design.keepEvery;
     const { taps } = this.planned.design;
     const gain = taps === null ? null : gainAtBins(taps, plan.segment);
-    const width = alias.keptTo_Hz / BANDS;
-    const kept = new Float64Array(BANDS);
-    const folded = new Float64Array(BANDS);
-    const worst = new Float64Array(BANDS);
-    const source = new Float64Array(BANDS);
+    // Bins 1 and up lie in the band kept. A record so short that it shows none there cannot be judged.
+    const binsKept = Math.floor(alias.keptTo_Hz / plan.resolution_Hz);
+    if (binsKept < 1) return null;
+    const bands = Math.max(1, Math.min(MOST_BANDS, Math.floor(binsKept / BINS_A_BAND)));
+    const width = alias.keptTo_Hz / bands;
+    const kept = new Float64Array(bands);
+    const folded = new Float64Array(bands);
+    const worst = new Float64Array(bands);
+    const source = new Float64Array(bands);
     // Bin 0 is what is left of the mean after each segment's own was taken out.
     for (let k = 1; k < plan.bins; k++) {
       const f = plan.frequency(k);
       const edge = k === plan.bins - 1 ? 1 : 2;
       const p = edge * this.power[k]! * (gain === null ? 1 : gain[k]! ** 2);
       const home = f <= newRate / 2 ? f : foldedFrequency(f, newRate).frequency;
-      const band = Math.min(BANDS - 1, Math.floor(home / width));
+      const band = Math.min(bands - 1, Math.floor(home / width));
       if (home > alias.keptTo_Hz) continue;
       if (home === f) kept[band]! += p;
       else {
@@ -84,7 +90,7 @@ export class AliasSpectrum {
     const least = LEAST_SHARE * kept.reduce((sum, p) => sum + p, 0);
     let at = -1;
     let ratio = 0;
-    for (let b = 0; b < BANDS; b++) {
+    for (let b = 0; b < bands; b++) {
       const reference = Math.max(kept[b]!, least);
       const r = folded[b]! / reference;
       if (reference > 0 && r > ratio) {

@@ -7,8 +7,11 @@ export interface StepResponse {
   readonly overshoot: number;
 }
 
-/** Final value, as a share of sum |h|, below which a step is taken not to pass. */
-const NOTHING = 1e-6;
+/**
+ * Final value, as a share of sum |h|, below which a step is taken not to pass: a high-pass of 60 dB leaves a
+ * thousandth of it, and an overshoot in shares of that would say nothing. Low-pass taps have 0.2 and more.
+ */
+const NOTHING = 0.05;
 
 export function stepResponse(taps: Float64Array): StepResponse {
   const final = taps.reduce((sum, w) => sum + w, 0);

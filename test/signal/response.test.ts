@@ -242,6 +242,15 @@ describe("edges, rise and overshoot", () => {
     }
   });
 
+  it("states no rise and no overshoot of a high-pass, whatever it leaves of a constant", () => {
+    const low = Float64Array.from(
+      { length: 57 },
+      (_, n) => (0.5 * (1 - Math.cos((2 * Math.PI * (n + 1)) / 58))) / 29,
+    );
+    const high = low.map((w, n) => (n === 28 ? 1.0007 : 0) - w);
+    expect(stepResponse(high)).toEqual({ rise_10_90: null, overshoot: 0 });
+  });
+
   it("measures rise and overshoot of the running sum", () => {
     expect(stepResponse(equal(10)).rise_10_90).toBeCloseTo(8, 12);
     expect(stepResponse(equal(10)).overshoot).toBe(0);
